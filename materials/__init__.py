@@ -1,0 +1,1 @@
+"""Optical constants with their sources."""
