@@ -1,0 +1,101 @@
+"""From the facets' reflectivities to threshold and power; knows no layers, recipes or files."""
+
+from coatings.laser.axial import (
+    AxialProfile,
+    axial_power_ratio,
+    axial_profile,
+    front_over_least,
+)
+from coatings.laser.chip import Gain, GainLaw, LaserChip
+from coatings.laser.estimate import LaserEstimate, estimate
+from coatings.laser.external import External, FedBackFacet, with_external
+from coatings.laser.facets import FacetLight
+from coatings.laser.limits import Judgement, Limits, judge_limits, keeps_limits
+from coatings.laser.locking import (
+    ExternalEstimate,
+    estimate_external,
+    highest_locking_R,
+    locking_margin_per_cm,
+    rival_nm,
+)
+from coatings.laser.operation import FieldModel, Operation, operate
+from coatings.laser.power import (
+    FacetSplit,
+    excess_current_A,
+    facet_load_MW_per_cm2,
+    facet_output_MW_per_cm2,
+    facet_split,
+    total_slope_W_per_A,
+)
+from coatings.laser.power_current import PowerCurrent, power_current
+from coatings.laser.resonator import (
+    R_product_needed,
+    mode_spacing_GHz,
+    reflected_gain,
+    ripple_dB,
+    round_trip,
+    round_trip_phase_rad,
+    single_pass_gain,
+    transmitted_gain,
+)
+from coatings.laser.ripple import Amplifier, Ripple, fringe_grid_nm, ripple_spectrum
+from coatings.laser.threshold import (
+    gain_shape,
+    lowest_threshold,
+    mirror_loss_per_cm,
+    threshold_current_A,
+    threshold_gain_per_cm,
+)
+
+__all__ = [
+    "Amplifier",
+    "AxialProfile",
+    "External",
+    "ExternalEstimate",
+    "FacetLight",
+    "FacetSplit",
+    "FedBackFacet",
+    "FieldModel",
+    "Gain",
+    "GainLaw",
+    "Judgement",
+    "LaserChip",
+    "LaserEstimate",
+    "Limits",
+    "Operation",
+    "PowerCurrent",
+    "R_product_needed",
+    "Ripple",
+    "axial_power_ratio",
+    "axial_profile",
+    "estimate",
+    "estimate_external",
+    "excess_current_A",
+    "facet_load_MW_per_cm2",
+    "facet_output_MW_per_cm2",
+    "facet_split",
+    "fringe_grid_nm",
+    "front_over_least",
+    "gain_shape",
+    "highest_locking_R",
+    "judge_limits",
+    "keeps_limits",
+    "locking_margin_per_cm",
+    "lowest_threshold",
+    "mirror_loss_per_cm",
+    "mode_spacing_GHz",
+    "operate",
+    "power_current",
+    "reflected_gain",
+    "ripple_dB",
+    "ripple_spectrum",
+    "rival_nm",
+    "round_trip",
+    "round_trip_phase_rad",
+    "single_pass_gain",
+    "threshold_current_A",
+    "threshold_gain_per_cm",
+    "total_slope_W_per_A",
+    "transmitted_gain",
+    "with_external",
+]

@@ -1,0 +1,68 @@
+"""``facetwright curve``: the spectra of the stacks in a recipe."""
+
+from __future__ import annotations
+
+from pathlib import Path
+from typing import TYPE_CHECKING, Any
+
+import click
+
+from coatings.cli.options import facet_option, recipe_argument, shared_from, shared_options, sides
+
+if TYPE_CHECKING:
+    from rich.console import Console
+
+    from coatings.curve import FacetCurve
+    from coatings.recipe import Recipe
+
+
+@click.command(epilog="Example: facetwright curve out/pump-976/chosen.toml --nm 940 1010 0.5 --csv front.csv --facet front")
+@recipe_argument
+@facet_option
+@click.option(
+    "--nm", nargs=3, type=float, metavar="FROM TO STEP",
+    help="Wavelengths in nm; FROM = TO gives one point. Default: all windows with some room around.",
+)  # fmt: skip
+@click.option("--csv", type=click.Path(path_type=Path), metavar="FILE", help="Write the spectra as CSV.")
+@shared_options
+def curve(recipe: Path, facet: str | None, nm: tuple[float, float, float] | None, csv: Path | None, **options: Any) -> int:
+    """Spectra (R, T, A, phase) of the stacks in RECIPE on the chip, with the margin of every window.
+
+    Exit status 1 when a window is missed.
+    """
+    from coatings.curve import facet_curve
+    from coatings.documents.files import check_file, write_files
+    from coatings.documents.results import curve_result, to_text
+    from coatings.documents.tables import curve_csv
+    from coatings.grids import grid_nm
+    from coatings.recipe import check_available, load_recipe
+
+    shared = shared_from(options)
+    loaded = load_recipe(recipe)
+    check_available(loaded, "curve")
+    folder = shared.folder(recipe)
+    shared.check_outputs(folder)
+    if csv is not None:
+        check_file(csv, option="--csv")
+    grid = None if nm is None else grid_nm(*nm)
+    curves = {side: facet_curve(loaded, side, wavelength_nm=grid) for side in sides(facet)}
+    text = to_text(curve_result(loaded, curves, seed=shared.seed, flat=facet is not None))
+    files = shared.json_files(text)
+    if csv is not None:
+        files[csv] = curve_csv(curves).encode()
+    if grid is None or len(grid) > 1:
+        from coatings.documents.pictures import spectrum_picture
+
+        files[folder / "curve.png"] = spectrum_picture(loaded, curves, stacks={}, bands={})
+    write_files(files)
+    shared.print_json(text)
+    _print_summary(shared.console(), loaded, curves, list(files))
+    return 0 if all(c.meets for c in curves.values()) else 1
+
+
+def _print_summary(console: Console, recipe: Recipe, curves: dict[str, FacetCurve], files: list[Path]) -> None:
+    from coatings.cli.summary import curve_lines, files_line
+
+    for line in curve_lines(recipe, curves):
+        console.print(line)
+    console.print(files_line(files))

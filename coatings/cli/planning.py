@@ -1,0 +1,166 @@
+"""The work of ``plan`` between a loaded recipe and an exit status: search, estimate, write, say."""
+
+from __future__ import annotations
+
+import sys
+from dataclasses import dataclass
+from pathlib import Path
+
+import numpy as np
+
+from coatings.cli.options import Shared
+from coatings.cli.summary import files_line, plan_lines
+from coatings.curve import FacetCurve, default_grid_nm, facet_curve
+from coatings.design.plan import FacetPlan, plan_facets, take
+from coatings.design.relax import Shortfall, shortfall
+from coatings.design.search import Found
+from coatings.design.spread import draw_chips, reflectance_quantiles, run_errors
+from coatings.documents.chosen import chosen_recipe
+from coatings.documents.files import write_files
+from coatings.documents.pictures import power_picture, spectrum_picture, yield_picture
+from coatings.documents.plots import Band
+from coatings.documents.results import plan_result, to_text
+from coatings.errors import InputError, Problem
+from coatings.executors import default_workers
+from coatings.facets import facet_scene, facet_spectrum, film_rows, stack_of
+from coatings.laser import Judgement, LaserEstimate, power_current
+from coatings.product import facet_light, laser_chip, product_estimate, product_limits
+from coatings.recipe import Recipe
+from coatings.stack import Stack
+
+BAND_DRAWS = 2000
+POWER_POINTS = 121
+
+
+@dataclass(frozen=True)
+class Planned:
+    """Everything that ``plan`` found, ready to be written and said."""
+
+    recipe: Recipe
+    plans: dict[str, FacetPlan]
+    stacks: dict[str, Stack]
+    curves: dict[str, FacetCurve]
+    laser: LaserEstimate | None
+    limits: tuple[Judgement, ...]
+    shortfalls: dict[str, Shortfall]
+
+
+def run_plan(recipe: Recipe, *, sides: tuple[str, ...], take_number: int | None, shared: Shared) -> int:
+    """Search, write every file and print the summary; returns the exit status."""
+    planned = planned_product(recipe, sides=sides, take_number=take_number, shared=shared)
+    folder = shared.folder(recipe.path)
+    text = to_text(
+        plan_result(
+            recipe, planned.plans, planned.laser, reflectance=_reflectances(planned), seed=shared.seed
+        )
+    )
+    files = {folder / "result.json": text.encode(), **_documents(planned, folder, shared.seed)}
+    write_files({**files, **shared.json_files(text)})
+    shared.print_json(text)
+    console = shared.console()
+    for line in plan_lines(planned):
+        console.print(line)
+    console.print(files_line(list(files)))
+    cut_short = any(plan.cut_short for plan in planned.plans.values())
+    return 0 if all(plan.meets for plan in planned.plans.values()) and not cut_short else 1
+
+
+def planned_product(
+    recipe: Recipe, *, sides: tuple[str, ...], take_number: int | None, shared: Shared
+) -> Planned:
+    """Plans of the facets, the stacks taken, their curves and the laser they make."""
+    if not any(getattr(recipe, side).windows for side in sides):
+        raise InputError(
+            Problem(f"{recipe.path}", f"no windows on {' or '.join(sides)}; add [[front.windows]] to say what to reach")
+        )
+    workers = shared.workers or default_workers()
+    plans = plan_facets(
+        recipe, sides=sides, seed=shared.seed, workers=workers, progress=_progress(shared.quiet)
+    )
+    if take_number is not None:
+        plans = _with_taken(plans, take_number)
+    stacks = {side: plan.stack(plan.taken) for side, plan in plans.items()}
+    laser = product_estimate(recipe, stacks)
+    return Planned(
+        recipe=recipe,
+        plans=plans,
+        stacks=stacks,
+        curves={side: facet_curve(recipe, side, searched=stacks.get(side)) for side in plans},
+        laser=laser,
+        limits=() if laser is None else product_limits(recipe, laser),
+        shortfalls={s: shortfall(p) for s, p in plans.items() if not p.meets},
+    )
+
+
+def _with_taken(plans: dict[str, FacetPlan], number: int) -> dict[str, FacetPlan]:
+    searched = [side for side, plan in plans.items() if plan.searched]
+    if len(searched) != 1:
+        raise InputError(Problem("--take", "needs --facet front or --facet rear: both facets were searched"))
+    return {**plans, searched[0]: take(plans[searched[0]], number)}
+
+
+def _progress(quiet: bool):  # type: ignore[no-untyped-def]
+    if quiet or not sys.stderr.isatty():
+        return None
+
+    def say(side: str, count: int, best: Found | None) -> None:
+        found = "no stack fits" if best is None else f"yield {100 * best.yields.chips:.1f} %"
+        print(f"  searched {side}, {count} layers: {found}", file=sys.stderr)
+
+    return say
+
+
+def _reflectances(planned: Planned) -> dict[str, list[float]]:
+    at = np.array([planned.recipe.chip.wavelength_nm])
+    return {
+        side: [
+            float(facet_spectrum(planned.recipe, side, wavelength_nm=at, searched=plan.stack(f)).R[0])
+            for f in plan.stacks
+        ]
+        for side, plan in planned.plans.items()
+    }
+
+
+def _documents(planned: Planned, folder: Path, seed: int) -> dict[Path, bytes]:
+    recipe = planned.recipe
+    searched = {s: st for s, st in planned.stacks.items() if planned.plans[s].searched}
+    files = {
+        folder / "chosen.toml": chosen_recipe(recipe, searched).encode(),
+        folder / "spectra.png": spectrum_picture(
+            recipe,
+            planned.curves,
+            stacks=planned.stacks,
+            bands={side: _band(planned, side, seed) for side in planned.curves},
+        ),
+        **{folder / path.name: path.read_bytes() for path in recipe.table_paths},
+    }
+    if searched:
+        files[folder / "layers-yield.png"] = yield_picture(
+            {side: plan for side, plan in planned.plans.items() if plan.searched}
+        )
+    if recipe.laser is not None:
+        files[folder / "power.png"] = _power_picture(planned)
+    return files
+
+
+def _band(planned: Planned, side: str, seed: int) -> Band:
+    recipe, facet = planned.recipe, getattr(planned.recipe, side)
+    grid = default_grid_nm(recipe, side)
+    stack = stack_of(facet, planned.stacks[side])
+    film = film_rows(stack.materials, facet.films)
+    draws = draw_chips(
+        run_errors(recipe, side), film=film, count=BAND_DRAWS, generator=np.random.default_rng([seed, 7])
+    )
+    scene = facet_scene(recipe, facet, wavelength_nm=grid)
+    low, middle, high = reflectance_quantiles(scene, np.array(stack.nm), film=film, draws=draws)
+    return Band(grid, low, middle, high)
+
+
+def _power_picture(planned: Planned) -> bytes:
+    recipe = planned.recipe
+    chip = laser_chip(recipe)
+    threshold = None if planned.laser is None else planned.laser.threshold_A
+    most = 1.15 * max(chip.drive_A or 0.0, 2.0 * (threshold or 0.0)) or 1.0
+    current = np.linspace(0.0, most, POWER_POINTS)[1:]
+    lights = [facet_light(recipe, side, planned.stacks.get(side)) for side in ("front", "rear")]
+    return power_picture(power_current(chip, *lights, current_A=current), drive_A=chip.drive_A)

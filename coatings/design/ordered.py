@@ -1,0 +1,72 @@
+"""From real numbers to thicknesses that can be ordered: round, then search the grid around."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+
+import numpy as np
+
+from coatings.design.limits import RunLimits
+from coatings.facets import FloatArray, IntArray
+
+SWEEPS = 6
+
+Score = Callable[[FloatArray], FloatArray]  # stacks (S, L) [nm] -> (S,), higher is better
+
+
+def best_ordered(
+    nm: FloatArray, *, film: IntArray, limits: RunLimits, score: Score
+) -> FloatArray:
+    """Best stack (L,) [nm] on the grid of ordered thicknesses around ``nm``: greedy over single steps
+    of every layer and opposite and equal steps of every two."""
+    here = _kept(limits.rounded(_corners(nm, limits.step_nm), film=film), limits, film)
+    if not len(here):
+        here = limits.rounded(np.maximum(nm - limits.step_nm, limits.bounds(film)[0]), film=film)[None]
+    best, best_score = _best(here, score)
+    moves = _moves(len(nm)) * limits.step_nm
+    for _ in range(SWEEPS):
+        near = _kept(limits.rounded(best + moves, film=film), limits, film)
+        if not len(near):
+            break
+        found, found_score = _best(near, score)
+        if found_score <= best_score:
+            break
+        best, best_score = found, found_score
+    return best
+
+
+def _best(stacks: FloatArray, score: Score) -> tuple[FloatArray, float]:
+    scores = score(stacks)
+    top = int(np.argmax(scores))
+    return stacks[top], float(scores[top])
+
+
+def _kept(stacks: FloatArray, limits: RunLimits, film: IntArray) -> FloatArray:
+    unique = np.unique(stacks, axis=0)
+    kept: FloatArray = unique[limits.held(unique, film=film)]
+    return kept
+
+
+def _corners(nm: FloatArray, step_nm: float) -> FloatArray:
+    """All roundings up and down of up to six layers, nearest for the rest; at least the nearest."""
+    count = len(nm)
+    loose = np.argsort(-np.abs(nm / step_nm - np.round(nm / step_nm)))[: min(count, 6)]
+    corners = np.tile(nm, (2 ** len(loose) + 1, 1))
+    for bit, layer in enumerate(loose):
+        up = (np.arange(2 ** len(loose)) >> bit) & 1
+        corners[1:, layer] = (np.floor(nm[layer] / step_nm) + up) * step_nm
+    return corners
+
+
+def _moves(count: int) -> FloatArray:
+    single = np.vstack([np.eye(count), -np.eye(count)])
+    if count > 6:  # pairs grow with the square of the count and no longer pay
+        return single
+    pairs = []
+    for i in range(count):
+        for j in range(i + 1, count):
+            for a, b in ((1.0, 1.0), (1.0, -1.0), (-1.0, 1.0), (-1.0, -1.0)):
+                move = np.zeros(count)
+                move[i], move[j] = a, b
+                pairs.append(move)
+    return np.vstack([single, *pairs])

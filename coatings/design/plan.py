@@ -1,0 +1,177 @@
+"""The main job: for every facet the stack that most chips of most runs will meet.
+
+``plan_facets`` searches every layer count of every facet with a palette and windows, and judges the
+stacks of facets that are already chosen. The shortlist holds the best stack of each layer count.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass, replace
+
+import numpy as np
+
+from coatings.design.limits import RunLimits, run_limits
+from coatings.design.model import FacetModel, facet_frame
+from coatings.design.search import Found, Task, judge, search_count
+from coatings.design.spread import run_errors
+from coatings.design.windows import facet_goal
+from coatings.facets import film_rows
+from coatings.errors import InputError, Problem
+from coatings.executors import run_all
+from coatings.recipe import Facet, Recipe
+from coatings.stack import Stack
+
+SIDES = ("front", "rear")
+SECOND_DESIGN_LOSS = 0.05  # a second design of a layer count is listed if it loses no more yield
+
+Progress = Callable[[str, int, Found | None], None]
+
+
+@dataclass(frozen=True)
+class FacetPlan:
+    """Shortlist of one facet, best yield first, and the stack taken.
+
+    ``task`` holds the facet's model, limits and errors; ``searched`` tells a search from the judgement
+    of given layers; ``cut_short`` that the search was interrupted.
+    """
+
+    side: str
+    task: Task
+    stacks: tuple[Found, ...]
+    chosen: int
+    searched: bool
+    cut_short: bool = False
+
+    @property
+    def taken(self) -> Found:
+        """The stack taken."""
+        return self.stacks[self.chosen]
+
+    @property
+    def meets(self) -> bool:
+        """Whether the stack taken is inside every window."""
+        return self.taken.margin >= 0.0
+
+    def stack(self, found: Found) -> Stack:
+        """The searched layers of a stack by name."""
+        films = self.task.model.goal.films
+        return Stack.of([films[row] for row in found.film], [float(nm) for nm in found.nm])
+
+
+def facet_task(recipe: Recipe, side: str, *, seed: int) -> Task:
+    """Task of a facet that has windows; ``side`` is "front" or "rear"."""
+    facet: Facet = getattr(recipe, side)
+    return Task(
+        side=side,
+        model=FacetModel(facet_goal(recipe, side), facet_frame(facet)),
+        limits=run_limits(recipe, side),
+        errors=run_errors(recipe, side),
+        seed=seed,
+    )
+
+
+def plan_facets(
+    recipe: Recipe,
+    *,
+    sides: tuple[str, ...] = SIDES,
+    seed: int,
+    workers: int,
+    progress: Progress | None = None,
+) -> dict[str, FacetPlan]:
+    """Plans of the facets with windows, by side.
+
+    Raises InputError when a facet's limits leave no stack to search, or when the work was interrupted
+    before the first stack of a facet was found.
+    """
+    tasks = {s: facet_task(recipe, s, seed=seed) for s in sides if getattr(recipe, s).windows}
+    searched = {s: t for s, t in tasks.items() if getattr(recipe, s).is_searchable}
+    found, cut_short = _search(searched, workers, progress)
+    plans = {}
+    for side, task in tasks.items():
+        if side in searched:
+            plans[side] = _shortlist(task, found[side], cut_short=cut_short)
+        else:
+            plans[side] = _judged_as_given(task, getattr(recipe, side))
+    return plans
+
+
+def _search(
+    tasks: dict[str, Task], workers: int, progress: Progress | None
+) -> tuple[dict[str, list[Found]], bool]:
+    pieces = [
+        (task, count) for task in tasks.values() for count in range(1, task.limits.most_layers + 1)
+    ]
+    pieces.sort(key=lambda piece: -piece[1])  # the long ones first: workers end together
+
+    def on_done(piece: tuple[Task, int], found: list[Found]) -> None:
+        if progress is not None:
+            progress(piece[0].side, piece[1], found[0] if found else None)
+
+    outcome = run_all(_search_piece, pieces, workers=workers, on_done=on_done)
+    found: dict[str, list[Found]] = {side: [] for side in tasks}
+    for (task, _), result in zip(pieces, outcome.results, strict=True):
+        found[task.side] += result or []
+    for side, designs in found.items():
+        if not designs:
+            raise InputError(_nothing_found(side, tasks[side].limits, outcome.cut_short))
+    return found, outcome.cut_short
+
+
+def _search_piece(piece: tuple[Task, int]) -> list[Found]:
+    return search_count(*piece)
+
+
+def _nothing_found(side: str, limits: RunLimits, cut_short: bool) -> Problem:
+    if cut_short:
+        return Problem(side, "stopped before the first stack was found; nothing was written")
+    thinnest = min(limits.thinnest_nm[list(limits.palette)])
+    return Problem(
+        side,
+        f"no stack fits the limits of the run (thinnest layer {thinnest:g} nm, total_nm "
+        f"{limits.total_nm}, first and last as asked); widen layer_nm, total_nm or stress_max_N_per_m",
+    )
+
+
+def _shortlist(task: Task, found: list[Found], *, cut_short: bool) -> FacetPlan:
+    kept: list[Found] = []
+    for count in sorted({len(f.nm) for f in found}):
+        designs = sorted((f for f in found if len(f.nm) == count), key=lambda f: f.rank, reverse=True)
+        kept.append(designs[0])
+        kept += [
+            f for f in designs[1:2] if f.yields.chips >= designs[0].yields.chips - SECOND_DESIGN_LOSS
+        ]
+    kept = ranked(kept, by_margin=task.errors.none)
+    return FacetPlan(task.side, task, tuple(kept), choose(kept, task), True, cut_short)
+
+
+def ranked(stacks: list[Found], *, by_margin: bool) -> list[Found]:
+    """Best first: by yield then margin, or by margin when nothing errs."""
+    return sorted(stacks, key=lambda f: (f.margin,) if by_margin else f.rank, reverse=True)
+
+
+def choose(stacks: list[Found], task: Task) -> int:
+    """Index of the stack to take: the highest yield; within one standard error of it the fewest layers,
+    then the least thickness. By margin when nothing errs or nothing passes."""
+    best = stacks[0]
+    if task.errors.none or best.yields.chips == 0.0:
+        return max(range(len(stacks)), key=lambda i: stacks[i].margin)
+    good_enough = best.yields.chips - best.yields.standard_error
+    level = [i for i, f in enumerate(stacks) if f.yields.chips >= good_enough]
+    return min(level, key=lambda i: (len(stacks[i].nm), float(stacks[i].nm.sum())))
+
+
+def _judged_as_given(task: Task, facet: Facet) -> FacetPlan:
+    layers = facet.layers or ()
+    film = film_rows([layer.material for layer in layers], task.model.goal.films)
+    nm = np.array([layer.nm for layer in layers], dtype=float)
+    return FacetPlan(task.side, task, (judge(task, film, nm),), 0, searched=False)
+
+
+def take(plan: FacetPlan, number: int) -> FacetPlan:
+    """The plan with another stack of its shortlist taken (counted from 0)."""
+    if not 0 <= number < len(plan.stacks):
+        raise InputError(
+            Problem("--take", f"is {number}; {plan.side} has stacks 0 to {len(plan.stacks) - 1}")
+        )
+    return replace(plan, chosen=number)

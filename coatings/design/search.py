@@ -1,0 +1,250 @@
+"""All of one layer count: starts, refinement, robust finishing, rounding, judgement.
+
+One call does one layer count of one facet and depends on nothing but its arguments, so that calls can
+run anywhere in any order and give the same answer.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+
+import numpy as np
+
+from coatings.design import starts
+from coatings.design.climb import SmoothYield, climb, slack_scale
+from coatings.design.limits import RunLimits
+from coatings.design.model import FacetModel
+from coatings.design.ordered import best_ordered
+from coatings.design.polish import least_squares, minimax
+from coatings.design.spread import RunErrors, Yield, draw_mirrored, sampled_yield
+from coatings.facets import FloatArray, IntArray
+from coatings.recipe import FacetName
+
+SEARCH_POINTS = 13  # wavelengths a window while searching
+JUDGE_POINTS = 61  # and while sampling the final yield; margins use every one
+ALIKE_NM = 3.0  # starts no further apart than this in every layer would end at one place
+APART_WAVES = 1 / 16  # designs further apart than this in one layer's optical thickness differ
+
+
+@dataclass(frozen=True)
+class Task:
+    """Everything that the search of one facet needs; plain data, so that it can be sent to a worker."""
+
+    side: FacetName
+    model: FacetModel
+    limits: RunLimits
+    errors: RunErrors
+    seed: int
+
+
+@dataclass(frozen=True)
+class Found:
+    """A judged stack: film rows and ordered thicknesses (L,), margin over the full grid, yield."""
+
+    film: IntArray
+    nm: FloatArray
+    margin: float
+    yields: Yield
+
+    @property
+    def rank(self) -> tuple[float, float]:
+        """Order of merit: yield, then margin."""
+        return self.yields.chips, self.margin
+
+
+@dataclass(frozen=True)
+class _Candidate:
+    film: IntArray
+    nm: FloatArray
+    score: float
+
+
+@dataclass(frozen=True)
+class _Effort:
+    starts: int  # random starts an order of films
+    keep: int  # candidates an order that go on
+    finish: int  # candidates a layer count that reach robust finishing
+    draws: int  # drawn chips while finishing
+    fine_draws: int  # and in the last stage
+
+
+def _effort(count: int) -> _Effort:
+    if count <= 4:
+        return _Effort(starts=240, keep=6, finish=16, draws=512, fine_draws=4096)
+    if count <= 8:
+        return _Effort(starts=80, keep=3, finish=6, draws=384, fine_draws=2048)
+    return _Effort(starts=32, keep=2, finish=4, draws=256, fine_draws=768)
+
+
+LISTED = 3  # designs a layer count that are finished with many draws and judged
+FINE_LOSS = 0.1  # and how much less yield than the best they may have
+FINE_STAGES = (0.15, 0.05)
+
+
+def search_count(task: Task, count: int) -> list[Found]:
+    """The best few designs with ``count`` searched layers, best first; none where no stack fits."""
+    generator = np.random.default_rng([task.seed, _side_number(task.side), count])
+    thin = task.model.with_goal(task.model.goal.thinned(SEARCH_POINTS))
+    candidates: list[_Candidate] = []
+    for film in task.limits.orders(count, generator):
+        candidates += _candidates(task, thin, film, generator)
+    leaders = _distinct(candidates, most=_effort(count).finish)
+    if task.errors.none:
+        ordered = [_by_margin(task, c) for c in leaders]
+    else:
+        finished = [_by_yield(task, thin, c, generator) for c in leaders]
+        listed = _distinct(finished, most=LISTED, apart_nm=_apart_nm(task))
+        ordered = [
+            _ordered_by_yield(task, thin, c, generator)
+            for c in listed
+            if c.score >= listed[0].score - FINE_LOSS
+        ]
+    judged = [judge(task, c.film, c.nm) for c in _distinct(ordered, most=LISTED, apart_nm=_apart_nm(task))]
+    return sorted(judged, key=lambda f: f.rank, reverse=True)
+
+
+def _side_number(side: FacetName) -> int:
+    return ("front", "rear").index(side)
+
+
+def _candidates(
+    task: Task, thin: FacetModel, film: IntArray, generator: np.random.Generator
+) -> list[_Candidate]:
+    effort = _effort(len(film))
+    nm = _starts(task, film, effort.starts, generator)
+    refined = least_squares(thin, nm, film=film, limits=task.limits)
+    merit = _merit(task, thin, film, generator)
+    tops = _distinct(_scored(film, refined, merit(refined)), most=effort.keep)
+    by_margin = _scored(film, refined, thin.margin(refined, film=film))
+    flattest = [
+        minimax(task.model, c.nm, film=film, limits=task.limits)
+        for c in _distinct(by_margin, most=max(effort.keep // 2, 1))
+    ]
+    return tops + _scored(film, np.array(flattest), merit(np.array(flattest)))
+
+
+def _scored(film: IntArray, nm: FloatArray, scores: FloatArray) -> list[_Candidate]:
+    return [_Candidate(film, row, float(score)) for row, score in zip(nm, scores, strict=True)]
+
+
+def _starts(task: Task, film: IntArray, count: int, generator: np.random.Generator) -> FloatArray:
+    spot = starts.OneWavelength.middle_of(task.model)
+    by_chance = starts.random_thicknesses(task.limits, film=film, count=count, generator=generator)
+    closed = starts.closed_by_first_layer(spot, task.model, by_chance, film=film)
+    if len(closed) > count:
+        closed = closed[np.sort(generator.choice(len(closed), count, replace=False))]
+    every = np.vstack(
+        [
+            starts.quarter_waves(spot, film=film),
+            starts.equal_thicknesses(spot, film=film, steps=max(count // 8, 6)),
+            closed,
+            by_chance,
+        ]
+    )
+    return task.limits.inside(every, film=film)
+
+
+def _merit(
+    task: Task, model: FacetModel, film: IntArray, generator: np.random.Generator
+) -> Callable[[FloatArray], FloatArray]:
+    """Score of stacks (S, L): smooth yield under a few draws, or the margin when nothing errs."""
+    if task.errors.none:
+        return lambda nm: model.margin(nm, film=film)
+    rows = model.frame.film(film)
+    draws = draw_mirrored(task.errors, film=rows, count=48, generator=generator)
+    smooth = SmoothYield(model, film, draws)
+    tau = 0.2 * float(model.goal.width.min())
+    return lambda nm: np.array([smooth.merit(row, tau=tau) for row in nm])
+
+
+def _by_margin(task: Task, candidate: _Candidate) -> _Candidate:
+    """The flattest ordered stack near a candidate."""
+    film, limits = candidate.film, task.limits
+
+    def score(stacks: FloatArray) -> FloatArray:
+        return task.model.margin(stacks, film=film)
+
+    nm = minimax(task.model, candidate.nm, film=film, limits=limits)
+    nm = best_ordered(nm, film=film, limits=limits, score=score)
+    return _Candidate(film, nm, float(score(nm[None])[0]))
+
+
+def _by_yield(
+    task: Task, thin: FacetModel, candidate: _Candidate, generator: np.random.Generator
+) -> _Candidate:
+    """The stack near a candidate that most drawn chips meet, not yet rounded."""
+    film = candidate.film
+    draws = draw_mirrored(
+        task.errors, film=thin.frame.film(film), count=_effort(len(film)).draws, generator=generator
+    )
+    smooth = SmoothYield(thin, film, draws)
+    if (smooth.slack(candidate.nm) < 0.0).all() and candidate.score < 0.0:
+        nm = minimax(task.model, candidate.nm, film=film, limits=task.limits)
+    else:
+        nm = climb(smooth, candidate.nm, limits=task.limits)
+    return _Candidate(film, nm, smooth.merit(nm, tau=0.05 * slack_scale(smooth, nm)))
+
+
+def _ordered_by_yield(
+    task: Task, thin: FacetModel, candidate: _Candidate, generator: np.random.Generator
+) -> _Candidate:
+    """A finished stack climbed once more under many draws and put on the grid of ordered thicknesses."""
+    film, limits = candidate.film, task.limits
+    draws = draw_mirrored(
+        task.errors, film=thin.frame.film(film), count=_effort(len(film)).fine_draws, generator=generator
+    )
+    smooth = SmoothYield(thin, film, draws)
+    if not (smooth.slack(candidate.nm) >= 0.0).any():
+        return _by_margin(task, candidate)
+    nm = climb(smooth, candidate.nm, limits=limits, stages=FINE_STAGES)
+    tau = FINE_STAGES[-1] * slack_scale(smooth, nm)
+
+    def score(stacks: FloatArray) -> FloatArray:
+        return np.array([smooth.merit(row, tau=tau) for row in stacks])
+
+    nm = best_ordered(nm, film=film, limits=limits, score=score)
+    return _Candidate(film, nm, float(score(nm[None])[0]))
+
+
+def judge(task: Task, film: IntArray, nm: FloatArray) -> Found:
+    """Margin over the full grid and sampled yield of one ordered stack."""
+    judged = task.model.with_goal(task.model.goal.thinned(JUDGE_POINTS))
+    # One stream for all designs of a facet: their yields are compared under the same luck.
+    generator = np.random.default_rng([task.seed, _side_number(task.side), 1 << 20])
+    return Found(
+        film=film,
+        nm=nm,
+        margin=float(task.model.margin(nm[None], film=film)[0]),
+        yields=sampled_yield(judged, nm, film=film, errors=task.errors, generator=generator),
+    )
+
+
+def _apart_nm(task: Task) -> FloatArray:
+    """Thickness (M,) [nm] of each film by which two designs must differ in some layer."""
+    scene = task.model.goal.scene
+    middle = scene.points // 2
+    apart: FloatArray = APART_WAVES * scene.wavelength_nm[middle] / scene.films[:, middle].real
+    return apart
+
+
+def _distinct(
+    candidates: list[_Candidate], *, most: int, apart_nm: FloatArray | None = None
+) -> list[_Candidate]:
+    """The best by score, no two alike."""
+    kept: list[_Candidate] = []
+    for candidate in sorted(candidates, key=lambda c: -c.score):
+        if len(kept) == most:
+            break
+        apart = ALIKE_NM if apart_nm is None else apart_nm[candidate.film]
+        if not any(_alike(candidate, other, apart) for other in kept):
+            kept.append(candidate)
+    return kept
+
+
+def _alike(one: _Candidate, other: _Candidate, apart_nm: FloatArray | float) -> bool:
+    return (
+        len(one.film) == len(other.film)
+        and bool(np.all(one.film == other.film))
+        and bool(np.all(np.abs(one.nm - other.nm) < apart_nm))
+    )

@@ -1,0 +1,220 @@
+"""Errors of the run: what is deposited when a stack is ordered, and how many chips stay inside.
+
+    d_j' = d_j (1 + run z0 + layer z_j + position z_p) + thickness_sigma z'_j
+
+with independent standard normal z: z_p once a chip, the others once a run. Film indices shift run to
+run, the chip's modal index chip to chip. When the monitor holds the optical thickness, a film whose
+index came out high is that much thinner. Base and cap are deposited too and err like any layer.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from math import sqrt
+
+import numpy as np
+
+from coatings.design.model import FacetModel
+from coatings.facets import FloatArray, IntArray
+from coatings.optics import Scene, reflectance
+from coatings.recipe import Recipe
+
+RUN_SHARE = 0.95  # share of a run's chips that must be inside for the run to count
+CHUNK = 2048  # draws evaluated at once: keeps arrays in cache
+
+
+@dataclass(frozen=True)
+class RunErrors:
+    """One-sigma errors: fractions of thickness, nm, index; ``index`` and ``monitor_index`` (M,) by film row."""
+
+    run: float
+    layer: float
+    position: float
+    thickness_sigma_nm: float
+    index: FloatArray
+    chip_index: float
+    holds_optical: bool
+    monitor_index: FloatArray
+
+    @property
+    def none(self) -> bool:
+        """Whether every error is zero."""
+        scalars = (self.run, self.layer, self.position, self.thickness_sigma_nm, self.chip_index)
+        return not any(scalars) and not self.index.any()
+
+
+@dataclass(frozen=True)
+class Draws:
+    """Deposited chips: ``factor`` and ``offset_nm`` (S, L) on thickness, ``film_shift`` (S, M),
+    ``incident_shift`` (S,) on index. L counts every layer, base and cap included."""
+
+    factor: FloatArray
+    offset_nm: FloatArray
+    film_shift: FloatArray
+    incident_shift: FloatArray
+
+    def __len__(self) -> int:
+        return len(self.factor)
+
+    def nm(self, ordered_nm: FloatArray) -> FloatArray:
+        """Deposited thicknesses (S, L) [nm]; a film that would come out below nothing is absent."""
+        return np.maximum(ordered_nm * self.factor + self.offset_nm, 0.0)
+
+    def part(self, rows: slice) -> Draws:
+        """Some of the draws."""
+        return Draws(
+            self.factor[rows], self.offset_nm[rows], self.film_shift[rows], self.incident_shift[rows]
+        )
+
+
+def run_errors(recipe: Recipe, side: str) -> RunErrors:
+    """Errors of a facet's run from its recipe; ``side`` is "front" or "rear"."""
+    process = recipe.process_for(side)
+    films = getattr(recipe, side).films
+    at = np.array([recipe.chip.wavelength_nm])
+    return RunErrors(
+        run=process.run_percent / 100.0,
+        layer=process.layer_percent / 100.0,
+        position=process.position_percent / 100.0,
+        thickness_sigma_nm=process.thickness_sigma_nm,
+        index=np.array([process.index.get(name, 0.0) for name in films]),
+        chip_index=process.chip_index,
+        holds_optical=process.holds == "optical",
+        monitor_index=np.array([float(recipe.material(name).nk(at).real[0]) for name in films]),
+    )
+
+
+def draw_chips(
+    errors: RunErrors, *, film: IntArray, count: int, generator: np.random.Generator
+) -> Draws:
+    """``count`` chips, each of another run; ``film`` (L,) rows of all layers."""
+    return _drawn(errors, film, generator, runs=count, chips=1)
+
+
+def draw_runs(
+    errors: RunErrors, *, film: IntArray, runs: int, chips: int, generator: np.random.Generator
+) -> Draws:
+    """``runs`` runs of ``chips`` chips each, run after run."""
+    return _drawn(errors, film, generator, runs=runs, chips=chips)
+
+
+def draw_mirrored(
+    errors: RunErrors, *, film: IntArray, count: int, generator: np.random.Generator
+) -> Draws:
+    """``count`` chips in pairs with opposite errors: steadier averages for a search."""
+    half = draw_chips(errors, film=film, count=(count + 1) // 2, generator=generator)
+    pairs = (
+        (half.factor, 2.0 - half.factor),
+        (half.offset_nm, -half.offset_nm),
+        (half.film_shift, -half.film_shift),
+        (half.incident_shift, -half.incident_shift),
+    )
+    return Draws(*(np.concatenate(pair) for pair in pairs))
+
+
+def _drawn(
+    errors: RunErrors, film: IntArray, generator: np.random.Generator, *, runs: int, chips: int
+) -> Draws:
+    layers, films = len(film), len(errors.index)
+    run = errors.run * generator.standard_normal((runs, 1))
+    layer = errors.layer * generator.standard_normal((runs, layers))
+    offset = errors.thickness_sigma_nm * generator.standard_normal((runs, layers))
+    shift = errors.index * generator.standard_normal((runs, films))
+    position = errors.position * generator.standard_normal((runs * chips, 1))
+    incident = errors.chip_index * generator.standard_normal(runs * chips)
+    shift_of_chip = np.repeat(shift, chips, axis=0)
+    factor = 1.0 + np.repeat(run + layer, chips, axis=0) + position
+    if errors.holds_optical:
+        held = errors.monitor_index / (errors.monitor_index + shift_of_chip)
+        factor = factor * held[:, film]
+    return Draws(factor, np.repeat(offset, chips, axis=0), shift_of_chip, incident)
+
+
+def drawn_slack(model: FacetModel, nm: FloatArray, *, film: IntArray, draws: Draws) -> FloatArray:
+    """Least slack (S,) of every drawn chip of one ordered stack ``nm`` (L,) [nm]."""
+    ordered = model.frame.nm(nm[None])[0]
+    rows = model.frame.film(film)
+    least = np.empty(len(draws))
+    for start in range(0, len(draws), CHUNK):
+        part = draws.part(slice(start, start + CHUNK))
+        slack = model.goal.slack(
+            part.nm(ordered),
+            film=rows,
+            film_shift=part.film_shift,
+            incident_shift=part.incident_shift,
+        )
+        least[start : start + CHUNK] = slack.min(axis=1)
+    return least
+
+
+@dataclass(frozen=True)
+class Yield:
+    """Share of chips inside all windows, its standard error and Wilson interval (95 %), and the share
+    of runs of whose chips at least 95 % are inside."""
+
+    chips: float
+    standard_error: float
+    low: float
+    high: float
+    runs: float
+
+
+def sampled_yield(
+    model: FacetModel,
+    nm: FloatArray,
+    *,
+    film: IntArray,
+    errors: RunErrors,
+    generator: np.random.Generator,
+    chips: int = 16384,
+    runs: int = 256,
+    chips_a_run: int = 60,
+) -> Yield:
+    """Yield of one ordered stack (L,) [nm] by sampling: chips of as many runs, and runs of many chips."""
+    rows = model.frame.film(film)
+    if errors.none:
+        inside = float(model.margin(nm[None], film=film)[0] >= 0.0)
+        return Yield(inside, 0.0, inside, inside, inside)
+    pooled = draw_chips(errors, film=rows, count=chips, generator=generator)
+    passed = int(np.count_nonzero(drawn_slack(model, nm, film=film, draws=pooled) >= 0.0))
+    low, high = wilson_interval(passed, chips)
+    share = passed / chips
+    nested = draw_runs(errors, film=rows, runs=runs, chips=chips_a_run, generator=generator)
+    inside_run = drawn_slack(model, nm, film=film, draws=nested).reshape(runs, chips_a_run) >= 0.0
+    good = np.mean(inside_run.mean(axis=1) >= RUN_SHARE - 1e-12)
+    # never zero: an observed share of 1 is not certainty
+    error = max(sqrt(share * (1.0 - share) / chips), 1.0 / chips)
+    return Yield(share, error, low, high, float(good))
+
+
+def wilson_interval(passed: int, count: int, *, z: float = 1.959963984540054) -> tuple[float, float]:
+    """Wilson's score interval of a share: E. B. Wilson, J. Am. Stat. Assoc. 22, 209 (1927), from memory.
+
+    Parameters: ``passed`` of ``count`` draws; ``z`` normal quantile (95 % two-sided by default).
+    """
+    share = passed / count
+    middle = share + z * z / (2 * count)
+    half = z * sqrt(share * (1 - share) / count + z * z / (4 * count * count))
+    scale = 1 + z * z / count
+    return max((middle - half) / scale, 0.0), min((middle + half) / scale, 1.0)
+
+
+def reflectance_quantiles(
+    scene: Scene,
+    ordered_nm: FloatArray,
+    *,
+    film: IntArray,
+    draws: Draws,
+    quantiles: tuple[float, ...] = (0.05, 0.5, 0.95),
+) -> FloatArray:
+    """Quantiles (K, P) of R over drawn chips of one stack; ``ordered_nm`` (L,) and ``film`` (L,) count
+    every layer, base and cap included."""
+    R = reflectance(
+        scene,
+        draws.nm(ordered_nm),
+        film=film,
+        film_shift=draws.film_shift,
+        incident_shift=draws.incident_shift,
+    )
+    result: FloatArray = np.quantile(R, quantiles, axis=0)
+    return result

@@ -1,0 +1,117 @@
+"""Whole figures as PNG bytes, made of the drawings in ``plots``."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from io import BytesIO
+
+import matplotlib as mpl
+import numpy as np
+from matplotlib.axes import Axes
+from matplotlib.backends.backend_agg import FigureCanvasAgg
+from matplotlib.figure import Figure
+
+from coatings.curve import FacetCurve
+from coatings.design.plan import FacetPlan
+from coatings.documents.look import INK, SIDE_COLOURS, STYLE
+from coatings.documents.plots import (
+    Band,
+    draw_gates,
+    draw_layers,
+    draw_power,
+    draw_spectrum,
+    draw_yields,
+)
+from coatings.facets import stack_of
+from coatings.laser import PowerCurrent
+from coatings.recipe import Facet, Recipe, Window
+from coatings.stack import Stack
+from materials import Material
+
+
+def spectrum_picture(
+    recipe: Recipe, curves: Mapping[str, FacetCurve], *, stacks: Mapping[str, Stack],
+    bands: Mapping[str, Band],
+) -> bytes:  # fmt: skip
+    """One row a facet: the layers above, the spectrum with gates and spread below."""
+    with mpl.rc_context(STYLE):
+        figure = Figure(figsize=(7.6, 3.9 * len(curves)), layout="constrained")
+        grid = figure.add_gridspec(2 * len(curves), 1, height_ratios=[1, 5] * len(curves))
+        for row, (side, curve) in enumerate(curves.items()):
+            layers_ax = figure.add_subplot(grid[2 * row])
+            spectrum_ax = figure.add_subplot(grid[2 * row + 1])
+            _layers(layers_ax, recipe, side, stacks.get(side))
+            draw_spectrum(spectrum_ax, curve.spectrum, side=side, band=bands.get(side))
+            _frame_windows(spectrum_ax, [w.window for w in curve.windows])
+            draw_gates(spectrum_ax, [w.window for w in curve.windows])
+            if side in bands:
+                spectrum_ax.legend(loc="best")
+        return _png(figure)
+
+
+def yield_picture(plans: Mapping[str, FacetPlan]) -> bytes:
+    """Layers against yield, one panel a facet."""
+    with mpl.rc_context(STYLE):
+        figure = Figure(figsize=(7.6, 3.2), layout="constrained")
+        axes = figure.subplots(1, len(plans), squeeze=False)[0]
+        for ax, (side, plan) in zip(axes, plans.items(), strict=True):
+            draw_yields(ax, plan)
+            ax.set_title(side, color=SIDE_COLOURS[side])
+        return _png(figure)
+
+
+def power_picture(power: PowerCurrent, *, drive_A: float | None) -> bytes:
+    """Power against current for both facets."""
+    with mpl.rc_context(STYLE):
+        figure = Figure(figsize=(6.0, 3.6), layout="constrained")
+        draw_power(figure.subplots(), power, drive_A=drive_A)
+        return _png(figure)
+
+
+def material_picture(material: Material) -> bytes:
+    """n and k of a material over its range."""
+    with mpl.rc_context(STYLE):
+        figure = Figure(figsize=(6.0, 4.6), layout="constrained")
+        n_ax, k_ax = figure.subplots(2, 1, sharex=True)
+        wavelength = np.clip(np.geomspace(*material.range_nm, 600), *material.range_nm)
+        values = material.nk(wavelength)
+        for ax, value, label in ((n_ax, values.real, "n"), (k_ax, values.imag, "k")):
+            ax.plot(wavelength, value, color=INK, lw=1.6)
+            ax.set_ylabel(label)
+        k_ax.set_xlabel("wavelength (nm)")
+        k_ax.set_xscale("log")
+        n_ax.set_title(f"{material.name}: {material.info.sample}")
+        return _png(figure)
+
+
+def _layers(ax: Axes, recipe: Recipe, side: str, searched: Stack | None) -> None:
+    facet: Facet = getattr(recipe, side)
+    at = np.array([recipe.chip.wavelength_nm])
+    layers = [
+        (layer.material, layer.nm, float(recipe.material(layer.material).nk(at).real[0]) * layer.nm / at[0])
+        for layer in stack_of(facet, searched)
+    ]
+    outside = facet.outside if isinstance(facet.outside, str) else f"n = {facet.outside:g}"
+    draw_layers(ax, layers, outside=outside)
+    ax.set_title(f"{side}: {recipe.title}", color=SIDE_COLOURS[side])
+
+
+def _frame_windows(ax: Axes, windows: list[Window]) -> None:
+    """Limits of the R axis that show the curve near its windows, gates included."""
+    levels = [100 * v for w in windows for v in (w.low, w.high) if v is not None and 0 < v < 1]
+    if not levels:
+        return
+    start = min(w.band_nm[0] for w in windows)
+    stop = max(w.band_nm[1] for w in windows)
+    shown = [y for line in ax.lines for x, y in zip(*map(np.asarray, line.get_data()), strict=True)
+             if start <= x <= stop]  # fmt: skip
+    low, high = min([*levels, *shown]), max([*levels, *shown])
+    room = 0.35 * (high - low) or 0.5 * high
+    ax.set_ylim(max(low - room, 0.0) if low > 5 * (high - low) else 0.0, min(high + room, 101.0))
+
+
+def _png(figure: Figure) -> bytes:
+    FigureCanvasAgg(figure)
+    out = BytesIO()
+    figure.savefig(out, format="png", metadata={"Software": None})
+    return out.getvalue()

@@ -1,0 +1,108 @@
+"""Results as plain data for ``--json`` and ``result.json``: pure functions of what was computed."""
+
+from __future__ import annotations
+
+import json
+from collections.abc import Mapping
+from typing import Any
+
+from coatings import __version__
+from coatings.curve import FacetCurve
+from coatings.design.plan import FacetPlan
+from coatings.design.search import Found
+from coatings.facets import FloatArray
+from coatings.laser import LaserEstimate
+from coatings.recipe import Facet, Recipe
+
+TOOL = "facetwright"
+
+Json = dict[str, Any]
+
+
+def head(recipe: Recipe, *, seed: int) -> Json:
+    """What every result carries: tool, version, hash of the recipe's bytes, seed."""
+    return {
+        "tool": TOOL,
+        "version": __version__,
+        "recipe_sha256": recipe.sha256,
+        "seed": seed,
+    }
+
+
+def to_text(result: Json) -> str:
+    """A result as JSON text; non-finite numbers are refused, not written."""
+    return json.dumps(result, indent=1, allow_nan=False, ensure_ascii=False) + "\n"
+
+
+def curve_result(recipe: Recipe, curves: Mapping[str, FacetCurve], *, seed: int, flat: bool) -> Json:
+    """Result of ``curve``: one facet ``flat``, or both by side."""
+    parts = {side: _curve(curve) for side, curve in curves.items()}
+    body = next(iter(parts.values())) if flat else parts
+    return {**head(recipe, seed=seed), **body}
+
+
+def _curve(curve: FacetCurve) -> Json:
+    spectrum = curve.spectrum
+    return {
+        "facet": curve.side,
+        "side": "chip",
+        "model": curve.model,
+        "wavelength_nm": _plain(spectrum.wavelength_nm),
+        "R": _plain(spectrum.R),
+        "T": _plain(spectrum.T),
+        "A": _plain(spectrum.A),
+        "S": _plain(spectrum.S),
+        "phase_rad": _plain(spectrum.phase_rad),
+        "windows": [
+            {"band_nm": list(w.window.band_nm), "margin": w.margin, "worst_nm": w.worst_nm}
+            for w in curve.windows
+        ],
+    }
+
+
+def plan_result(
+    recipe: Recipe,
+    plans: Mapping[str, FacetPlan],
+    laser: LaserEstimate | None,
+    *,
+    reflectance: Mapping[str, list[float]],
+    seed: int,
+) -> Json:
+    """Result of ``plan``; ``reflectance`` holds R at the wavelength of operation of each listed stack."""
+    result = head(recipe, seed=seed)
+    for side, plan in plans.items():
+        result[side] = _facet_plan(recipe, plan, reflectance[side])
+    result["laser"] = None if laser is None else laser.to_json_dict()
+    result["cut_short"] = any(plan.cut_short for plan in plans.values())
+    return result
+
+
+def _facet_plan(recipe: Recipe, plan: FacetPlan, reflectance: list[float]) -> Json:
+    facet: Facet = getattr(recipe, plan.side)
+    return {
+        "stacks": [_stack(plan, f, R) for f, R in zip(plan.stacks, reflectance, strict=True)],
+        "chosen": plan.chosen,
+        "searched": plan.searched,
+        "base": [{"material": e.material, "nm": e.nm} for e in facet.base],
+        "cap": [{"material": e.material, "nm": e.nm} for e in facet.cap],
+        "assumed": list(recipe.process_for(plan.side).assumed),
+    }
+
+
+def _stack(plan: FacetPlan, found: Found, R: float) -> Json:
+    stack = plan.stack(found)
+    return {
+        "layers": [{"material": layer.material, "nm": layer.nm} for layer in stack],
+        "meets": found.margin >= 0.0,
+        "margin": found.margin,
+        "yield": found.yields.chips,
+        "yield_low": found.yields.low,
+        "yield_high": found.yields.high,
+        "run_yield": found.yields.runs,
+        "total_nm": stack.total_nm,
+        "R": R,
+    }
+
+
+def _plain(values: FloatArray) -> list[float]:
+    return [float(value) for value in values]

@@ -1,0 +1,130 @@
+"""R, T, A and phase of stacks on the chip.
+
+Signs and symbols: time factor exp(-i w t), index n + i k, k > 0 absorbs. r is the ratio of the
+tangential electric fields for both polarizations. Layers are listed chip outward.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import ArrayLike
+
+from coatings.optics.arrays import Complexes, Reals, parts
+from coatings.optics.batch import Batch
+from coatings.optics.kernel import respond
+from coatings.optics.scene import Scene
+from coatings.optics.threads import share
+
+
+@dataclass(frozen=True, eq=False)
+class Response:
+    """What S stacks do to the light at P points.
+
+    Attributes
+    ----------
+    r, t : complex array (S, P)
+        Ratio of the reflected and of the transmitted tangential electric field to the incident one.
+    T : array (S, P)
+        Transmittance Re(eta_out) / Re(eta_in) |t|^2; nan where no power flows in the incident
+        medium (a real index below q).
+    """
+
+    r: Complexes
+    t: Complexes
+    T: Reals
+
+    @property
+    def R(self) -> Reals:  # noqa: N802
+        """Reflectance |r|^2, array (S, P)."""
+        return self.r.real**2 + self.r.imag**2
+
+    @property
+    def A(self) -> Reals:  # noqa: N802
+        """Absorptance 1 - R - T, array (S, P); meant for a real incident index."""
+        return 1.0 - self.R - self.T
+
+    @property
+    def phase_rad(self) -> Reals:
+        """Phase of r [rad], array (S, P), in (-pi, pi]."""
+        return np.angle(self.r)
+
+
+def response(
+    scene: Scene,
+    thickness_nm: ArrayLike,
+    *,
+    film: ArrayLike,
+    film_shift: ArrayLike | None = None,
+    incident_shift: ArrayLike | None = None,
+) -> Response:
+    """Amplitudes and powers of stacks by characteristic matrices.
+
+    Parameters
+    ----------
+    scene : Scene
+        Points and indices.
+    thickness_nm : array (S, L)
+        Thickness of each layer [nm], 0 or more, chip outward; L may be 0.
+    film : int array (L,) or (S, L)
+        Which row of ``scene.films`` each layer is made of.
+    film_shift : array (S, M), optional
+        Added to the index of each film [1], stack by stack; may be complex.
+    incident_shift : array (S,), optional
+        Added to the incident index [1]; q stays.
+
+    Returns
+    -------
+    Response
+        With r, t, R, T, A and phase_rad, all (S, P).
+
+    Raises
+    ------
+    ArrayError
+        Naming the argument, the place and the value.
+
+    References
+    ----------
+    F. Abeles, Ann. Phys. (Paris) 12, 596 (1950), for the matrices (from memory).
+    """
+    return respond_to(Batch.of(scene, thickness_nm, film, film_shift, incident_shift))
+
+
+def respond_to(batch: Batch) -> Response:
+    """`response` of a batch that is checked already."""
+    stacks, points, _ = batch.shape
+    r, t = np.empty((2, stacks, points), np.complex128)
+    big_t = np.empty((stacks, points))
+    unwanted = np.empty((stacks, 0))
+
+    def job(rows: slice) -> None:
+        respond(*batch.arguments(rows), parts(r)[rows], parts(t)[rows], big_t[rows], unwanted[rows])
+
+    share(stacks, batch.cost_each, job)
+    return Response(r, t, big_t)
+
+
+def reflectance(
+    scene: Scene,
+    thickness_nm: ArrayLike,
+    *,
+    film: ArrayLike,
+    film_shift: ArrayLike | None = None,
+    incident_shift: ArrayLike | None = None,
+) -> Reals:
+    """R alone, array (S, P): `response`'s R for a fraction of its memory.
+
+    Parameters, errors and reference as for `response`.
+    """
+    batch = Batch.of(scene, thickness_nm, film, film_shift, incident_shift)
+    stacks, points, _ = batch.shape
+    big_r = np.empty((stacks, points))
+    unwanted = np.empty((stacks, 0))
+
+    def job(rows: slice) -> None:
+        none = unwanted[rows]
+        respond(*batch.arguments(rows), none, none, none, big_r[rows])
+
+    share(stacks, batch.cost_each, job)
+    return big_r
