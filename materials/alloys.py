@@ -81,7 +81,7 @@ MODELS: dict[str, Model] = {
     "broberg-ingaas": Model(_broberg_ingaas, lambda *_: ingaasp_gap_ev(1.0), 0.03, 2500.0),
     "mondry-alinas": Model(_mondry_alinas, lambda *_: algainas_gap_ev(1.0), 0.03, 2000.0),
     "mondry": Model(_mondry, lambda x, _: algainas_gap_ev(x), 0.03, 2000.0),
-    "algan": Model(_algan, lambda x, _: algan_gap_ev(x), 0.05, 5000.0),
+    "algan": Model(_algan, lambda x, _: algan_gap_ev(x), 0.05, 5000.0, 220.0),
 }
 
 

@@ -57,14 +57,14 @@ def entry(name: str) -> Info | None:
 
 
 def search(word: str) -> tuple[Info, ...]:
-    """Entries whose name, compound, use, sample, process or source contains the word."""
+    """Entries whose name, compound, use, sample, process, source or notes contain the word."""
     wanted = word.casefold()
     return tuple(info for info in entries() if wanted in _searchable(info))
 
 
 def _searchable(info: Info) -> str:
-    parts = (info.name, info.compound, info.use, info.kind, info.sample, info.process)
-    return " ".join((*parts, info.source, info.notes)).casefold()
+    parts = (info.name, info.compound, info.common, info.use, info.kind, info.sample)
+    return " ".join((*parts, info.process, info.source, info.notes)).casefold()
 
 
 def nearest(name: str) -> str | None:

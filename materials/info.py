@@ -13,7 +13,7 @@ KINDS = ("table", "formula", "alloy", "constant", "mixture")
 NOT_STATED = "not stated"
 ROOM = "room"
 REQUIRED = (
-    "name", "use", "kind", "compound", "sample", "process", "temperature_C",
+    "name", "use", "kind", "compound", "common", "sample", "process", "temperature_C",
     "range_nm", "k_status", "accuracy", "source", "doi", "year",
 )  # fmt: skip
 
@@ -28,6 +28,7 @@ class Info:
     use : "semiconductor", "film", "metal", "witness", "ambient", or "own" for a recipe's own data.
     kind : "table", "formula", "alloy", "constant" or "mixture".
     compound : chemical compound; entries of one compound are compared with each other.
+    common : names by which people ask for the compound, parted by commas.
     sample : bulk or film, orientation or thickness, substrate.
     process : how it was grown or deposited, or "not stated".
     temperature_C : temperature of the measurement [deg C]; None where no number is stated.
@@ -49,6 +50,7 @@ class Info:
     use: str
     kind: str
     compound: str
+    common: str
     sample: str
     process: str
     temperature_C: float | None  # noqa: N815
@@ -90,6 +92,7 @@ def info_from_head(head: Mapping[str, str], where: str) -> Info:
         use=head["use"],
         kind=head["kind"],
         compound=head["compound"],
+        common=head["common"],
         sample=head["sample"],
         process=head["process"],
         temperature_C=_number_or_none(head, "temperature_C", where),

@@ -61,8 +61,9 @@ def curve(recipe: Path, facet: str | None, nm: tuple[float, float, float] | None
 
 
 def _print_summary(console: Console, recipe: Recipe, curves: dict[str, FacetCurve], files: list[Path]) -> None:
-    from coatings.cli.summary import curve_lines, files_line
+    from coatings.cli.summary import curve_lines, files_lines
 
     for line in curve_lines(recipe, curves):
         console.print(line)
-    console.print(files_line(files))
+    for line in files_lines(files):
+        console.print(line)

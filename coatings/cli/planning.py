@@ -9,7 +9,7 @@ from pathlib import Path
 import numpy as np
 
 from coatings.cli.options import Shared
-from coatings.cli.summary import files_line, plan_lines
+from coatings.cli.summary import files_lines, plan_lines
 from coatings.curve import FacetCurve, default_grid_nm, facet_curve
 from coatings.design.plan import FacetPlan, plan_facets, take
 from coatings.design.relax import Shortfall, shortfall
@@ -60,7 +60,8 @@ def run_plan(recipe: Recipe, *, sides: tuple[str, ...], take_number: int | None,
     console = shared.console()
     for line in plan_lines(planned):
         console.print(line)
-    console.print(files_line(list(files)))
+    for line in files_lines(list(files)):
+        console.print(line)
     cut_short = any(plan.cut_short for plan in planned.plans.values())
     return 0 if all(plan.meets for plan in planned.plans.values()) and not cut_short else 1
 
@@ -163,4 +164,5 @@ def _power_picture(planned: Planned) -> bytes:
     most = 1.15 * max(chip.drive_A or 0.0, 2.0 * (threshold or 0.0)) or 1.0
     current = np.linspace(0.0, most, POWER_POINTS)[1:]
     lights = [facet_light(recipe, side, planned.stacks.get(side)) for side in ("front", "rear")]
-    return power_picture(power_current(chip, *lights, current_A=current), drive_A=chip.drive_A)
+    power = power_current(chip, *lights, current_A=current)
+    return power_picture(power, drive_A=chip.drive_A, title=recipe.title)

@@ -13,7 +13,7 @@ from matplotlib.figure import Figure
 
 from coatings.curve import FacetCurve
 from coatings.design.plan import FacetPlan
-from coatings.documents.look import INK, SIDE_COLOURS, STYLE
+from coatings.documents.look import INK, SIDE_COLOURS, STYLE, film_colours
 from coatings.documents.plots import (
     Band,
     draw_gates,
@@ -37,6 +37,7 @@ def spectrum_picture(
     with mpl.rc_context(STYLE):
         figure = Figure(figsize=(7.6, 3.9 * len(curves)), layout="constrained")
         grid = figure.add_gridspec(2 * len(curves), 1, height_ratios=[1, 5] * len(curves))
+        figure.suptitle(recipe.title, x=0.02, ha="left", fontsize=11, fontweight="bold", color=INK)
         for row, (side, curve) in enumerate(curves.items()):
             layers_ax = figure.add_subplot(grid[2 * row])
             spectrum_ax = figure.add_subplot(grid[2 * row + 1])
@@ -60,11 +61,15 @@ def yield_picture(plans: Mapping[str, FacetPlan]) -> bytes:
         return _png(figure)
 
 
-def power_picture(power: PowerCurrent, *, drive_A: float | None) -> bytes:
-    """Power against current for both facets."""
+def power_picture(power: PowerCurrent, *, drive_A: float | None, title: str) -> bytes:
+    """Power against current: the front above, the rear below on its own scale."""
     with mpl.rc_context(STYLE):
-        figure = Figure(figsize=(6.0, 3.6), layout="constrained")
-        draw_power(figure.subplots(), power, drive_A=drive_A)
+        figure = Figure(figsize=(6.4, 4.6), layout="constrained")
+        front_ax, rear_ax = figure.subplots(2, 1, sharex=True, height_ratios=[2.4, 1])
+        draw_power(front_ax, power, side="front", drive_A=drive_A)
+        draw_power(rear_ax, power, side="rear", drive_A=drive_A)
+        rear_ax.set_xlabel("current (A)")
+        front_ax.set_title(title)
         return _png(figure)
 
 
@@ -92,8 +97,9 @@ def _layers(ax: Axes, recipe: Recipe, side: str, searched: Stack | None) -> None
         for layer in stack_of(facet, searched)
     ]
     outside = facet.outside if isinstance(facet.outside, str) else f"n = {facet.outside:g}"
-    draw_layers(ax, layers, outside=outside)
-    ax.set_title(f"{side}: {recipe.title}", color=SIDE_COLOURS[side])
+    colours = film_colours([*recipe.front.films, *recipe.rear.films])
+    draw_layers(ax, layers, outside=outside, colours=colours)
+    ax.set_title(side, color=SIDE_COLOURS[side], pad=4)
 
 
 def _frame_windows(ax: Axes, windows: list[Window]) -> None:

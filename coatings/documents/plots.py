@@ -2,17 +2,18 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
 import numpy as np
 from matplotlib.axes import Axes
-from matplotlib.collections import FillBetweenPolyCollection, PathCollection
+from matplotlib.collections import PathCollection
 from matplotlib.lines import Line2D
 from matplotlib.patches import Rectangle
+from matplotlib.ticker import MaxNLocator
 
 from coatings.design.plan import FacetPlan
-from coatings.documents.look import CHIP, GATE, INK, QUIET, SIDE_COLOURS, film_colours
+from coatings.documents.look import CHIP, GATE, INK, QUIET, SIDE_COLOURS
 from coatings.facets import FacetSpectrum, FloatArray
 from coatings.laser import PowerCurrent
 from coatings.recipe import Window
@@ -63,35 +64,39 @@ def draw_gates(ax: Axes, windows: Sequence[Window]) -> list[Rectangle]:
 
 
 def draw_layers(
-    ax: Axes, layers: Sequence[tuple[str, float, float]], *, outside: str
+    ax: Axes, layers: Sequence[tuple[str, float, float]], *, outside: str, colours: Mapping[str, str]
 ) -> list[Rectangle]:
     """Layers to optical scale between chip (left) and outside (right).
 
-    ``layers``: (film, thickness in nm, optical thickness in waves), chip outward.
+    ``layers``: (film, thickness in nm, optical thickness in waves), chip outward; ``colours`` by film.
     """
-    colours = film_colours([film for film, _, _ in layers])
     total = sum(waves for *_, waves in layers) or 0.25
     end = 0.12 * total
-    boxes = [_box(ax, -end, end, CHIP, "chip", 0.0)]
+    boxes = [_box(ax, -end, end, CHIP)]
+    ax.text(-0.5 * end, 0.5, "chip", ha="center", va="center", fontsize=8, color=INK)
     at = 0.0
-    for film, nm, waves in layers:
-        boxes.append(_box(ax, at, waves, colours[film], f"{film}\n{nm:g} nm", waves / total))
+    for _film, nm, waves in layers:
+        boxes.append(_box(ax, at, waves, colours[_film]))
+        ax.text(
+            at + 0.5 * waves, 0.5, f"{nm:g}", ha="center", va="center", color=INK, fontsize=7,
+            rotation=0.0 if waves / total > 0.06 else 90.0,
+        )  # fmt: skip
         at += waves
-    ax.text(at + 0.15 * end, 0.5, outside, va="center", ha="left", fontsize=7, color=INK)
-    ax.set_xlim(-end, at + 1.6 * end)
+    films = dict.fromkeys(film for film, *_ in layers)
+    key = [Rectangle((0, 0), 1, 1, facecolor=colours[film], label=film) for film in films]
+    if key:
+        ax.legend(handles=key, loc="lower left", bbox_to_anchor=(0.1, 0.98), ncols=6, fontsize=8,
+                  borderaxespad=0.0, handlelength=1.2, columnspacing=1.2)  # fmt: skip
+    ax.text(at + 0.2 * end, 0.5, outside, va="center", ha="left", fontsize=8, color=INK)
+    ax.set_xlim(-end, at + end)
     ax.set_ylim(0, 1)
     ax.set_axis_off()
     return boxes
 
 
-def _box(ax: Axes, x: float, width: float, colour: str, label: str, share: float) -> Rectangle:
+def _box(ax: Axes, x: float, width: float, colour: str) -> Rectangle:
     box = Rectangle((x, 0.08), width, 0.84, facecolor=colour, edgecolor="white", lw=0.8)
     ax.add_patch(box)
-    upright = 0.0 if share == 0.0 or share > 0.11 else 90.0
-    ax.text(
-        x + width / 2, 0.5, label if upright == 0.0 else label.replace("\n", " "), ha="center",
-        va="center", rotation=upright, fontsize=7 if upright == 0.0 else 6, color=INK, clip_on=True,
-    )  # fmt: skip
     return box
 
 
@@ -100,45 +105,41 @@ def draw_yields(ax: Axes, plan: FacetPlan) -> PathCollection:
     colour = SIDE_COLOURS[plan.side]
     counts = np.array([len(found.nm) for found in plan.stacks], dtype=float)
     yields = np.array([100 * found.yields.chips for found in plan.stacks])
-    best = [float(yields[counts == count].max()) for count in np.unique(counts)]
-    ax.plot(np.unique(counts), best, color=colour, lw=1.0, alpha=0.5)
-    points = ax.scatter(counts, yields, s=26, color=colour, zorder=3)
+    best = {c: float(yields[counts == c].max()) for c in np.unique(counts)}
+    ax.plot(list(best), list(best.values()), color=colour, lw=1.0, alpha=0.5)
+    is_best = np.array([y == best[c] for c, y in zip(counts, yields, strict=True)])
+    faces = [colour if leading else "white" for leading in is_best]
+    points = ax.scatter(counts, yields, s=26, color=faces, edgecolor=colour, zorder=3)
     taken = plan.chosen
-    ax.scatter(counts[taken], yields[taken], s=120, facecolor="none", edgecolor=INK, lw=1.4, zorder=4)
+    ax.scatter(counts[taken], yields[taken], s=130, facecolor="none", edgecolor=INK, lw=1.4, zorder=4)
     ax.annotate(
-        f"taken: {yields[taken]:.1f} %", (counts[taken], yields[taken]), xytext=(0, -16),
-        textcoords="offset points", ha="center", fontsize=8, color=INK,
+        f"{yields[taken]:.1f} %", (counts[taken], yields[taken]), xytext=(-9, -3),
+        textcoords="offset points", ha="right", va="top", fontsize=9, color=INK, fontweight="bold",
     )  # fmt: skip
     ax.set_xlabel("searched layers")
     ax.set_ylabel("chips inside all windows (%)")
-    ax.set_xticks(np.unique(counts))
+    ax.xaxis.set_major_locator(MaxNLocator(integer=True, nbins=12))
     ax.set_xlim(counts.min() - 0.6, counts.max() + 0.6)
-    ax.set_ylim(min(-4.0, yields.min()), 106.0)
+    ax.set_ylim(-4.0, 106.0)
     return points
 
 
 def draw_power(
-    ax: Axes, power: PowerCurrent, *, drive_A: float | None
-) -> list[Line2D]:
-    """Power of both facets against current, the operating current marked."""
-    lines = []
-    for side, watts in (("front", power.front_W), ("rear", power.rear_W)):
-        (line,) = ax.plot(power.current_A, watts, color=SIDE_COLOURS[side], lw=1.8, label=side)
-        lines.append(line)
-    if drive_A is not None:
-        ax.axvline(drive_A, color=QUIET, lw=1.0, ls=(0, (4, 3)))
-        ax.annotate(
-            f"{drive_A:g} A", (drive_A, ax.get_ylim()[1]), xytext=(-3, -10),
-            textcoords="offset points", ha="right", fontsize=8, color=QUIET,
-        )  # fmt: skip
-    ax.set_xlabel("current (A)")
-    ax.set_ylabel("power (W)")
+    ax: Axes, power: PowerCurrent, *, side: str, drive_A: float | None
+) -> Line2D:
+    """Power of one facet against current; the power at the operating current is written out."""
+    watts = power.front_W if side == "front" else power.rear_W
+    scale, unit = (1.0, "W") if float(watts.max()) >= 0.5 else (1e3, "mW")
+    (line,) = ax.plot(power.current_A, scale * watts, color=SIDE_COLOURS[side], lw=1.8)
+    ax.set_ylabel(f"{side} ({unit})", color=SIDE_COLOURS[side])
     ax.set_xlim(0, float(power.current_A[-1]))
-    ax.set_ylim(bottom=0)
-    ax.legend(loc="upper left")
-    return lines
-
-
-def spread_collections(ax: Axes) -> list[FillBetweenPolyCollection]:
-    """The filled spread bands on an axes."""
-    return [c for c in ax.collections if isinstance(c, FillBetweenPolyCollection)]
+    ax.set_ylim(0, 1.12 * scale * float(watts.max()) or 1.0)
+    if drive_A is not None:
+        there = float(np.interp(drive_A, power.current_A, scale * watts))
+        ax.axvline(drive_A, color=QUIET, lw=1.0, ls=(0, (4, 3)))
+        ax.plot([drive_A], [there], "o", color=SIDE_COLOURS[side], ms=5)
+        ax.annotate(
+            f"{there:.3g} {unit} at {drive_A:g} A", (drive_A, there), xytext=(-8, 2),
+            textcoords="offset points", ha="right", va="bottom", fontsize=9, color=INK,
+        )  # fmt: skip
+    return line

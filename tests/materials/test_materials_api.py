@@ -85,10 +85,10 @@ def test_whole_library_checks_itself_quickly():
 
 @pytest.mark.parametrize("name", ["Ta2O5", "SiO2", "AlGaAs:0.30", "GaAs", "SiON:0.40"])
 def test_ten_thousand_wavelengths_in_no_time(name):
-    """Compared with 200 sines of as many numbers in the same run, not with a clock."""
+    """Compared with 60 sines of as many numbers in the same run, not with a clock."""
     nm = np.linspace(980.0, 1100.0, 10000)
     material = materials.load(name)
-    assert _best(lambda: material.nk(nm)) < 200.0 * _best(lambda: np.sin(nm))
+    assert _best(lambda: material.nk(nm)) < 60.0 * _best(lambda: np.sin(nm))
 
 
 def _best(function):
@@ -149,8 +149,11 @@ def test_what_is_not_there_says_why(name, reason):
 
 
 def test_search():
-    assert {info.name for info in materials.search("hafni")} >= {"HfO2"}
-    assert all(info.use == "metal" for info in materials.search("metal") if info.name == "Au")
+    assert {info.name for info in materials.search("hafnia")} >= {"HfO2", "HfO2-evaporated"}
+    assert {info.compound for info in materials.search("oxide")} >= {
+        "SiO2", "Al2O3", "Ta2O5", "TiO2", "HfO2", "Nb2O5", "Y2O3", "ZrO2", "ITO",
+    }  # fmt: skip
+    assert "Au" in {info.name for info in materials.search("gold")}
     assert {info.name for info in materials.search("MAGNETRON")} >= {"Nb2O5", "HfO2"}
     assert materials.search("no such word") == ()
 

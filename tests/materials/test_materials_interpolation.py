@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 from scipy.interpolate import PchipInterpolator
 
@@ -21,6 +21,7 @@ def curve_of(values):
     return nm, monotone(nm, np.asarray(values).astype(complex))
 
 
+@settings(deadline=None)
 @given(tables)
 def test_equals_scipy(values):
     nm, curve = curve_of(values)
@@ -40,12 +41,14 @@ def test_equals_scipy_on_the_library(name):
         np.testing.assert_allclose(getattr(table.value(at), part), twin(at), rtol=1e-11, atol=1e-12)
 
 
+@settings(deadline=None)
 @given(tables)
 def test_monotone_data_stay_monotone(values):
     nm, curve = curve_of(np.sort(values))
     assert (np.diff(curve.value(np.linspace(nm[0], nm[-1], 301)).real) >= -1e-12).all()
 
 
+@settings(deadline=None)
 @given(tables)
 def test_passes_through_the_table_and_stays_between_neighbours(values):
     nm, curve = curve_of(values)
@@ -56,6 +59,7 @@ def test_passes_through_the_table_and_stays_between_neighbours(values):
         assert inside.max() <= max(values[i], values[i + 1]) + 1e-12
 
 
+@settings(deadline=None)
 @given(tables)
 def test_slope_has_no_jump_at_the_rows(values):
     nm, curve = curve_of(values)

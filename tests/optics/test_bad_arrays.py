@@ -96,6 +96,4 @@ def test_read_only_and_strided_arrays_serve():
     np.testing.assert_array_equal(response(scene, fixed, film=[0, 1]).r, expected)
     strided = np.repeat(thickness, 2, axis=1)[:, ::2]
     np.testing.assert_array_equal(response(scene, strided, film=[0, 1]).r, expected)
-    np.testing.assert_array_equal(
-        response(scene, [[100, 80], [50, 40]], film=[0, 1]).r, expected
-    )
+    np.testing.assert_array_equal(response(scene, [[100, 80], [50, 40]], film=[0, 1]).r, expected)

@@ -73,10 +73,9 @@ def test_quarter_wave(n0, n1, ns):
 def test_three_films_in_place_of_one():
     """F5: a symmetric three-film sandwich equivalent to a quarter wave of sqrt(n_c) has R = 0.
 
-    US patent 5,282,219 (read). With outer films a (phase each p) and inner film b (phase q) the
-    product of the matrices is that of one film of phase pi/2 and index E when
-    tan 2p = 2 a b / ((a^2 + b^2) tan q)  and  E^2 = a^2 (sin 2p cos q + ... )/( ... ), solved here
-    for p and q by Newton's method on the elements of the product itself.
+    US patent 5,282,219 (read). The phases p of the outer films a and q of the inner film b make
+    the product of the matrices a b a that of one film of phase pi/2 and index sqrt(n_c): its
+    elements 11 and 12 are 0 and -i/sqrt(n_c). Solved here by Newton's method.
     """
     chip, a, b = 3.3, 1.62, 2.1
     target = np.sqrt(chip)
@@ -175,13 +174,12 @@ def test_cascaded_transmission_lines(seed):
 
     def line(n, d_nm):
         gamma = 2j * np.pi * n / (nm * 1e-9)
-        return DefinedGammaZ0(frequency, z0=1.0, gamma=gamma).line(
-            d_nm * 1e-9, "m", z0=1.0 / n, embed=True
-        )
+        medium = DefinedGammaZ0(frequency, z0_port=1.0, z0=1.0 / n, gamma=gamma)
+        return medium.line(d_nm * 1e-9, "m")
 
     network = line(indices[0], thickness[0])
     for n, d in zip(indices[1:], thickness[1:], strict=True):
-        network = network**line(n, d)
+        network = network ** line(n, d)
     network.renormalize([1.0 / 3.3, 1.0])
     scene = Scene(nm, 3.3, 1.0, np.repeat(indices[:, None], nm.size, axis=1))
     found = response(scene, [thickness], film=range(6))

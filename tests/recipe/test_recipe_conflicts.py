@@ -41,7 +41,7 @@ CONTRADICTIONS = {
     ),
     "guide of two": (
         document(guide("{ index = 3.2 }", "{ index = 3.4 }"), index=None),
-        r"^chip\.guide\.layers: has 2 layers; expected at least 3, the outer two being half-spaces$",
+        r"^chip\.guide\.layers: has 2 layers; expected at least 3, the outer two being half-spac",
     ),
     "outer layer with thickness": (
         document(
@@ -59,7 +59,9 @@ CONTRADICTIONS = {
     ),
     "guide layer of both": (
         document(
-            guide("{ index = 3, material = 'GaAs' }", "{ index = 3, um = 1 }", "{ index = 3 }"),
+            guide(
+                "{ index = 3, material = 'AlGaAs:0.30' }", "{ index = 3, um = 1 }", "{ index = 3 }"
+            ),
             index=None,
         ),
         r"^chip\.guide\.layers#1: gives both of material and index; expected one of them$",
@@ -96,7 +98,7 @@ CONTRADICTIONS = {
     # windows
     "no target": (
         document(front(only(band_nm="[964.0, 988.0]"))),
-        r"^front\.windows#1: has no target; expected one of reflectance \(with tolerance\), between",
+        r"^front\.windows#1: has no target; expected one of reflectance \(with tolerance\), betw",
     ),
     "two targets": (
         document(front(window(at_most="0.1"))),
@@ -187,7 +189,7 @@ CONTRADICTIONS = {
     ),
     "total below the thinnest": (
         document(front(layer_nm="{ Al2O3 = [15.0, 400.0], Ta2O5 = [20, 300] }", total_nm="10.0")),
-        r"^front\.total_nm: is 10, below 15 nm, the thinnest stack that first, last and layer_nm al",
+        r"^front\.total_nm: is 10, below 15 nm, the thinnest stack that first, last and layer_nm",
     ),
     "total below two ends": (
         document(front(layer_nm="[15, 400]", first='"Al2O3"', last='"Ta2O5"', total_nm="29.0")),
@@ -196,18 +198,14 @@ CONTRADICTIONS = {
     # process
     "stress limit without stress": (
         document(front(), "[process]\nstress_max_N_per_m = 50.0"),
-        r"^process\.stress_MPa: says nothing of Al2O3, Ta2O5; stress_max_N_per_m needs it for every",
-    ),
-    "stress limit on bare facets": (
-        document("[process]\nstress_max_N_per_m = 50.0"),
-        r"^process\.stress_MPa: is missing; stress_max_N_per_m needs it$",
+        r"^process\.stress_MPa: says nothing of Al2O3, Ta2O5; stress_max_N_per_m needs it for e",
     ),
     "own stress limit": (
         document(
             front(),
             "[process]\nstress_MPa = { Al2O3 = -100 }\n[front.process]\nstress_max_N_per_m = 50.0",
         ),
-        r"^front\.process\.stress_MPa: says nothing of Ta2O5; stress_max_N_per_m needs it for every",
+        r"^front\.process\.stress_MPa: says nothing of Ta2O5; stress_max_N_per_m needs it for e",
     ),
     # witness
     "witness twice": (
@@ -272,6 +270,7 @@ SOUND = {
     "total just enough": document(front(layer_nm="[15, 400]", total_nm="15.0")),
     "one thickness": document(front(layer_nm="[50, 50]")),
     "ends alike": document(front(first='"Al2O3"', last='"Al2O3"', max_layers="1")),
+    "stress limit on bare facets": document("[process]\nstress_max_N_per_m = 50.0"),
     "light through a polished plate": document(witness(quantity='"T"', back='"polished"')),
 }
 

@@ -117,7 +117,7 @@ def test_deep_nesting(text: str) -> None:
 
 
 def test_number_of_too_many_digits_is_one_line() -> None:
-    with pytest.raises(RecipeError, match="is not TOML: .*digits"):
+    with pytest.raises(RecipeError, match=r"is not TOML: .*digits"):
         parse_recipe("recipe = 1" + "0" * 5000, path=Path("x.toml"))
 
 

@@ -212,7 +212,7 @@ REFUSED = {
     "sister index": (document(front(window(index="0"))), r"^front\.windows#1\.index: is 0; expect"),
     "single brackets": (
         document("[front]\n[front.windows]\nat_most = 0.1"),
-        r"^front\.windows: is a table; expected at most 100 tables in double brackets, such as \[\[",
+        r"^front\.windows: is a table; expected at most 100 tables in double brackets, such as",
     ),
     # process
     "method": (
