@@ -10,7 +10,7 @@ from coatings.design.model import FacetModel, facet_frame
 from coatings.design.windows import facet_goal
 from coatings.facets import FacetSpectrum, FloatArray, facet_spectrum, film_rows
 from coatings.grids import grid_nm
-from coatings.recipe import Facet, Recipe, Window
+from coatings.recipe import FacetName, Recipe, Window
 from coatings.stack import Stack
 
 STEP_NM = 1.0
@@ -30,7 +30,7 @@ class WindowMargin:
 class FacetCurve:
     """Spectrum of one facet and the margins of its windows; ``model`` names the model of the light."""
 
-    side: str
+    side: FacetName
     spectrum: FacetSpectrum
     windows: tuple[WindowMargin, ...]
     model: str = "plane"
@@ -43,7 +43,7 @@ class FacetCurve:
 
 def facet_curve(
     recipe: Recipe,
-    side: str,
+    side: FacetName,
     *,
     wavelength_nm: FloatArray | None = None,
     searched: Stack | None = None,
@@ -52,7 +52,7 @@ def facet_curve(
 
     ``searched`` stands in for the recipe's own searched layers.
     """
-    facet: Facet = getattr(recipe, side)
+    facet = recipe.facets[side]
     grid = default_grid_nm(recipe, side) if wavelength_nm is None else wavelength_nm
     return FacetCurve(
         side=side,
@@ -61,14 +61,18 @@ def facet_curve(
     )
 
 
-def window_margins(recipe: Recipe, side: str, searched: Stack | None = None) -> tuple[WindowMargin, ...]:
+def window_margins(
+    recipe: Recipe, side: FacetName, searched: Stack | None = None
+) -> tuple[WindowMargin, ...]:
     """Margin of every window of a facet."""
-    facet: Facet = getattr(recipe, side)
+    facet = recipe.facets[side]
     goal = facet_goal(recipe, side)
     own = Stack.of([e.material for e in facet.layers or ()], [e.nm for e in facet.layers or ()])
     stack = own if searched is None else searched
     model = FacetModel(goal, facet_frame(facet))
-    slack = model.slack(np.array(stack.nm).reshape(1, -1), film=film_rows(stack.materials, goal.films))[0]
+    slack = model.slack(
+        np.array(stack.nm).reshape(1, -1), film=film_rows(stack.materials, goal.films)
+    )[0]
     margins = []
     for number, window in enumerate(facet.windows):
         members = np.flatnonzero(goal.window[goal.constraints.point] == number)
@@ -78,10 +82,10 @@ def window_margins(recipe: Recipe, side: str, searched: Stack | None = None) -> 
     return tuple(margins)
 
 
-def default_grid_nm(recipe: Recipe, side: str) -> FloatArray:
+def default_grid_nm(recipe: Recipe, side: FacetName) -> FloatArray:
     """Wavelengths [nm] that show every window of a facet with a fifth of its span on either side, as far
     as the materials reach."""
-    facet: Facet = getattr(recipe, side)
+    facet = recipe.facets[side]
     bands = [recipe.chip.band_nm, *(window.band_nm for window in facet.windows)]
     low, high = min(band[0] for band in bands), max(band[1] for band in bands)
     around = max(0.2 * (high - low), 10.0)
@@ -89,5 +93,8 @@ def default_grid_nm(recipe: Recipe, side: str) -> FloatArray:
     ranges = [recipe.material(name).range_nm for name in names if isinstance(name, str)]
     least = max([low - around, *(r[0] for r in ranges)])
     most = min([high + around, *(r[1] for r in ranges)])
-    least, most = np.ceil(min(least, low) / STEP_NM) * STEP_NM, np.floor(max(most, high) / STEP_NM) * STEP_NM
+    least, most = (
+        np.ceil(min(least, low) / STEP_NM) * STEP_NM,
+        np.floor(max(most, high) / STEP_NM) * STEP_NM,
+    )
     return grid_nm(float(least), float(most), STEP_NM) if most > least else np.array([low, high])

@@ -11,6 +11,7 @@ import os
 import signal
 from collections.abc import Callable, Sequence
 from concurrent.futures import Future, ProcessPoolExecutor, as_completed
+from concurrent.futures.process import BrokenProcessPool
 from dataclasses import dataclass
 from typing import Generic, TypeVar
 
@@ -64,6 +65,25 @@ def run_all(
 
 
 def _run_in_processes(
+    function: Callable[[Piece], Result],
+    pieces: Sequence[Piece],
+    workers: int,
+    done: Callable[[int, Result], None],
+) -> None:
+    left = set(range(len(pieces)))
+
+    def finished(number: int, result: Result) -> None:
+        left.discard(number)
+        done(number, result)
+
+    try:
+        _run_in_pool(function, pieces, workers, finished)
+    except BrokenProcessPool:  # a worker was killed: its pieces are done here, to the same bits
+        for number in sorted(left):
+            done(number, function(pieces[number]))
+
+
+def _run_in_pool(
     function: Callable[[Piece], Result],
     pieces: Sequence[Piece],
     workers: int,

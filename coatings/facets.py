@@ -10,9 +10,11 @@ from numpy.typing import NDArray
 
 from coatings.errors import InputError, Problem
 from coatings.optics import Response, Scene, response
-from coatings.recipe import Facet, Recipe
+from coatings.recipe import Facet, FacetName, Recipe
 from coatings.stack import Stack
 from materials.errors import MaterialError
+
+SIDES: tuple[FacetName, ...] = ("front", "rear")
 
 FloatArray = NDArray[np.float64]
 IntArray = NDArray[np.intp]
@@ -51,9 +53,10 @@ def facet_scene(
     """
     try:
         films = [recipe.material(name).nk(wavelength_nm) for name in facet.films]
+        own = recipe.chip_index(wavelength_nm)
         return Scene(
             wavelength_nm=wavelength_nm,
-            incident=recipe.chip_index(wavelength_nm) if incident is None else incident,
+            incident=(own if incident is None else incident).astype(complex),
             outside=outside_index(recipe, facet, wavelength_nm),
             films=np.array(films, dtype=complex).reshape(len(films), len(wavelength_nm)),
         )
@@ -61,7 +64,9 @@ def facet_scene(
         raise InputError(Problem(f"{recipe.path}: {facet.name}", str(error))) from None
 
 
-def outside_index(recipe: Recipe, facet: Facet, wavelength_nm: FloatArray) -> NDArray[np.complex128]:
+def outside_index(
+    recipe: Recipe, facet: Facet, wavelength_nm: FloatArray
+) -> NDArray[np.complex128]:
     """Index (P,) of what lies beyond the coating."""
     if isinstance(facet.outside, str):
         return recipe.material(facet.outside).nk(wavelength_nm)
@@ -79,13 +84,13 @@ def stack_of(facet: Facet, searched: Stack | None = None) -> Stack:
 
 
 def facet_spectrum(
-    recipe: Recipe, side: str, *, wavelength_nm: FloatArray, searched: Stack | None = None
+    recipe: Recipe, side: FacetName, *, wavelength_nm: FloatArray, searched: Stack | None = None
 ) -> FacetSpectrum:
     """Spectrum of a facet with its own layers or with ``searched`` ones between base and cap.
 
     Parameters: ``side`` "front" or "rear"; ``wavelength_nm`` (P,) [nm].
     """
-    facet: Facet = getattr(recipe, side)
+    facet = recipe.facets[side]
     scene = facet_scene(recipe, facet, wavelength_nm=wavelength_nm)
     stack = stack_of(facet, searched)
     light: Response = response(

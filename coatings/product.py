@@ -7,7 +7,7 @@ from collections.abc import Mapping
 import numpy as np
 
 from coatings.errors import InputError, Problem
-from coatings.facets import facet_spectrum
+from coatings.facets import SIDES, facet_spectrum
 from coatings.laser import (
     FacetLight,
     GainLaw,
@@ -18,7 +18,7 @@ from coatings.laser import (
     estimate,
     judge_limits,
 )
-from coatings.recipe import Recipe
+from coatings.recipe import FacetName, Recipe
 from coatings.stack import Stack
 
 
@@ -56,7 +56,7 @@ def laser_chip(recipe: Recipe) -> LaserChip:
     )
 
 
-def facet_light(recipe: Recipe, side: str, searched: Stack | None = None) -> FacetLight:
+def facet_light(recipe: Recipe, side: FacetName, searched: Stack | None = None) -> FacetLight:
     """R, T, A, S of a facet at the wavelength of operation."""
     at = np.array([recipe.chip.wavelength_nm])
     light = facet_spectrum(recipe, side, wavelength_nm=at, searched=searched)
@@ -66,13 +66,13 @@ def facet_light(recipe: Recipe, side: str, searched: Stack | None = None) -> Fac
 
 
 def product_estimate(
-    recipe: Recipe, searched: Mapping[str, Stack] | None = None
+    recipe: Recipe, searched: Mapping[FacetName, Stack] | None = None
 ) -> LaserEstimate | None:
     """Laser estimate with the recipe's own layers, or ``searched`` ones by side; None without [laser]."""
     if recipe.laser is None:
         return None
     stacks = searched or {}
-    front, rear = (facet_light(recipe, side, stacks.get(side)) for side in ("front", "rear"))
+    front, rear = (facet_light(recipe, side, stacks.get(side)) for side in SIDES)
     return estimate(laser_chip(recipe), front, rear)
 
 

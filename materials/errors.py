@@ -19,7 +19,7 @@ class MaterialError(ValueError):
     """Root of every error that the materials library raises on purpose."""
 
 
-class UnknownMaterial(MaterialError):  # noqa: N818
+class UnknownMaterial(MaterialError):
     """No entry of that name; ``nearest`` is the closest one, if any is close."""
 
     def __init__(self, name: str, nearest: str | None, reason: str = "") -> None:
@@ -34,7 +34,7 @@ class UnknownMaterial(MaterialError):  # noqa: N818
         super().__init__(f"no material {name!r}: {mend}")
 
 
-class OutOfRange(MaterialError):  # noqa: N818
+class OutOfRange(MaterialError):
     """A wavelength beyond the data; ``alternatives`` are entries that do reach it."""
 
     def __init__(

@@ -53,7 +53,7 @@ class Info:
     common: str
     sample: str
     process: str
-    temperature_C: float | None  # noqa: N815
+    temperature_C: float | None
     range_nm: tuple[float, float]
     k_status: str
     accuracy: str | None
@@ -63,7 +63,7 @@ class Info:
     notes: str = ""
     composition: tuple[float, float] | None = None
     composition_meaning: str = ""
-    thermal_C: tuple[float, float] | None = None  # noqa: N815
+    thermal_C: tuple[float, float] | None = None
     room_temperature: bool = False
 
     @property

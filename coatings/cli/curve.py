@@ -13,19 +13,29 @@ if TYPE_CHECKING:
     from rich.console import Console
 
     from coatings.curve import FacetCurve
-    from coatings.recipe import Recipe
+    from coatings.recipe import FacetName, Recipe
 
 
-@click.command(epilog="Example: facetwright curve out/pump-976/chosen.toml --nm 940 1010 0.5 --csv front.csv --facet front")
+@click.command(
+    epilog="Example: facetwright curve out/pump-976/chosen.toml --nm 940 1010 0.5 --csv spectra.csv"
+)
 @recipe_argument
 @facet_option
 @click.option(
     "--nm", nargs=3, type=float, metavar="FROM TO STEP",
     help="Wavelengths in nm; FROM = TO gives one point. Default: all windows with some room around.",
 )  # fmt: skip
-@click.option("--csv", type=click.Path(path_type=Path), metavar="FILE", help="Write the spectra as CSV.")
+@click.option(
+    "--csv", type=click.Path(path_type=Path), metavar="FILE", help="Write the spectra as CSV."
+)
 @shared_options
-def curve(recipe: Path, facet: str | None, nm: tuple[float, float, float] | None, csv: Path | None, **options: Any) -> int:
+def curve(
+    recipe: Path,
+    facet: FacetName | None,
+    nm: tuple[float, float, float] | None,
+    csv: Path | None,
+    **options: Any,
+) -> int:
     """Spectra (R, T, A, phase) of the stacks in RECIPE on the chip, with the margin of every window.
 
     Exit status 1 when a window is missed.
@@ -45,7 +55,7 @@ def curve(recipe: Path, facet: str | None, nm: tuple[float, float, float] | None
     if csv is not None:
         check_file(csv, option="--csv")
     grid = None if nm is None else grid_nm(*nm)
-    curves = {side: facet_curve(loaded, side, wavelength_nm=grid) for side in sides(facet)}
+    curves = {s: facet_curve(loaded, s, wavelength_nm=grid) for s in sides(facet)}
     text = to_text(curve_result(loaded, curves, seed=shared.seed, flat=facet is not None))
     files = shared.json_files(text)
     if csv is not None:
@@ -60,10 +70,9 @@ def curve(recipe: Path, facet: str | None, nm: tuple[float, float, float] | None
     return 0 if all(c.meets for c in curves.values()) else 1
 
 
-def _print_summary(console: Console, recipe: Recipe, curves: dict[str, FacetCurve], files: list[Path]) -> None:
-    from coatings.cli.summary import curve_lines, files_lines
+def _print_summary(
+    console: Console, recipe: Recipe, curves: dict[FacetName, FacetCurve], files: list[Path]
+) -> None:
+    from coatings.cli.summary import curve_lines, files_lines, print_rows
 
-    for line in curve_lines(recipe, curves):
-        console.print(line)
-    for line in files_lines(files):
-        console.print(line)
+    print_rows(console, [*curve_lines(recipe, curves), *files_lines(files)])

@@ -28,7 +28,9 @@ class Commands(click.Group):
         """The command of that name, or None."""
         if cmd_name not in COMMANDS:
             return None
-        command: click.Command = getattr(importlib.import_module(f"coatings.cli.{cmd_name}"), cmd_name)
+        command: click.Command = getattr(
+            importlib.import_module(f"coatings.cli.{cmd_name}"), cmd_name
+        )
         return command
 
 

@@ -24,13 +24,22 @@ GROUPS = {
 LABELS = {"k_status": "k is"}
 
 
-@click.command(epilog="Examples: facetwright materials Ta2O5 --nm 940 1000 20; facetwright materials oxide")
+@click.command(
+    epilog="Examples: facetwright materials Ta2O5 --nm 940 1000 20; facetwright materials oxide"
+)
 @click.argument("name", required=False)
 @click.option(
-    "--nm", nargs=3, type=float, metavar="FROM TO STEP", help="Wavelengths of the table of NAME, in nm."
+    "--nm",
+    nargs=3,
+    type=float,
+    metavar="FROM TO STEP",
+    help="Wavelengths of the table of NAME, in nm.",
 )
 @click.option(
-    "--out", type=click.Path(path_type=Path), metavar="DIR", help="Draw n and k of NAME into this folder."
+    "--out",
+    type=click.Path(path_type=Path),
+    metavar="DIR",
+    help="Draw n and k of NAME into this folder.",
 )
 @click.option("--json", "json_file", metavar="FILE", help="Write as JSON; '-' is standard output.")
 def materials(
@@ -48,7 +57,9 @@ def materials(
     if name is not None and not found and not _is_entry(name):
         near = library.nearest(name)
         hint = f"; did you mean {near}?" if near else ""
-        raise InputError(Problem(name, f"is not a material{hint} 'facetwright materials' lists all"))
+        raise InputError(
+            Problem(name, f"is not a material{hint} 'facetwright materials' lists all")
+        )
     if name is None or found:
         if nm is not None or out is not None:
             raise InputError(Problem("--nm, --out", "need the name of one material"))
@@ -92,7 +103,12 @@ def _print_list(console: Console, infos: tuple[Info, ...]) -> None:
     from rich.markup import escape
 
     rows = [
-        (info.name, f"{info.range_nm[0]:.0f}-{info.range_nm[1]:.0f}", info.k_status, str(info.year or "-"))
+        (
+            info.name,
+            f"{info.range_nm[0]:.0f}-{info.range_nm[1]:.0f}",
+            info.k_status,
+            str(info.year or "-"),
+        )
         for info in infos
     ]
     heads = ("name", "range, nm", "k", "year")

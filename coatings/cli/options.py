@@ -13,6 +13,8 @@ import click
 if TYPE_CHECKING:
     from rich.console import Console
 
+    from coatings.recipe import FacetName
+
 Command = TypeVar("Command", bound=Callable[..., Any])
 
 DEFAULT_SEED = 1
@@ -88,7 +90,9 @@ def shared_options(command: Command) -> Command:
 
 def shared_from(options: dict[str, Any]) -> Shared:
     """Take the shared options out of a command's keyword arguments."""
-    return Shared(**{name: options.pop(name) for name in ("out", "json", "seed", "workers", "quiet")})
+    return Shared(
+        **{name: options.pop(name) for name in ("out", "json", "seed", "workers", "quiet")}
+    )
 
 
 recipe_argument = click.argument("recipe", type=click.Path(path_type=Path), metavar="RECIPE")
@@ -98,6 +102,6 @@ facet_option = click.option(
 )
 
 
-def sides(facet: str | None) -> tuple[str, ...]:
+def sides(facet: FacetName | None) -> tuple[FacetName, ...]:
     """The facets that ``--facet`` leaves."""
     return ("front", "rear") if facet is None else (facet,)

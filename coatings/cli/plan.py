@@ -3,11 +3,14 @@
 from __future__ import annotations
 
 from pathlib import Path
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 import click
 
 from coatings.cli.options import facet_option, recipe_argument, shared_from, shared_options, sides
+
+if TYPE_CHECKING:
+    from coatings.recipe import FacetName
 
 
 @click.command(epilog="Example: facetwright plan recipes/pump-976.toml --out out/pump")
@@ -15,10 +18,10 @@ from coatings.cli.options import facet_option, recipe_argument, shared_from, sha
 @facet_option
 @click.option(
     "--take", type=click.IntRange(min=0), metavar="N",
-    help="Take stack N of the shortlist (counted from 0) instead of the best; needs --facet when both are searched.",
+    help="Take stack N of the shortlist, counted from 0; needs --facet when both are searched.",
 )  # fmt: skip
 @shared_options
-def plan(recipe: Path, facet: str | None, take: int | None, **options: Any) -> int:
+def plan(recipe: Path, facet: FacetName | None, take: int | None, **options: Any) -> int:
     """Find stacks for every facet of RECIPE that has a palette and windows.
 
     They are toleranced under [process], rounded to what can be ordered and fed to the laser estimate.

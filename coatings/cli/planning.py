@@ -9,7 +9,7 @@ from pathlib import Path
 import numpy as np
 
 from coatings.cli.options import Shared
-from coatings.cli.summary import files_lines, plan_lines
+from coatings.cli.summary import files_lines, plan_lines, print_rows
 from coatings.curve import FacetCurve, default_grid_nm, facet_curve
 from coatings.design.plan import FacetPlan, plan_facets, take
 from coatings.design.relax import Shortfall, shortfall
@@ -25,7 +25,7 @@ from coatings.executors import default_workers
 from coatings.facets import facet_scene, facet_spectrum, film_rows, stack_of
 from coatings.laser import Judgement, LaserEstimate, power_current
 from coatings.product import facet_light, laser_chip, product_estimate, product_limits
-from coatings.recipe import Recipe
+from coatings.recipe import FacetName, Recipe
 from coatings.stack import Stack
 
 BAND_DRAWS = 2000
@@ -37,42 +37,48 @@ class Planned:
     """Everything that ``plan`` found, ready to be written and said."""
 
     recipe: Recipe
-    plans: dict[str, FacetPlan]
-    stacks: dict[str, Stack]
-    curves: dict[str, FacetCurve]
+    plans: dict[FacetName, FacetPlan]
+    stacks: dict[FacetName, Stack]
+    curves: dict[FacetName, FacetCurve]
     laser: LaserEstimate | None
     limits: tuple[Judgement, ...]
-    shortfalls: dict[str, Shortfall]
+    shortfalls: dict[FacetName, Shortfall]
 
 
-def run_plan(recipe: Recipe, *, sides: tuple[str, ...], take_number: int | None, shared: Shared) -> int:
+def run_plan(
+    recipe: Recipe, *, sides: tuple[FacetName, ...], take_number: int | None, shared: Shared
+) -> int:
     """Search, write every file and print the summary; returns the exit status."""
     planned = planned_product(recipe, sides=sides, take_number=take_number, shared=shared)
     folder = shared.folder(recipe.path)
     text = to_text(
         plan_result(
-            recipe, planned.plans, planned.laser, reflectance=_reflectances(planned), seed=shared.seed
+            recipe,
+            planned.plans,
+            planned.laser,
+            reflectance=_reflectances(planned),
+            seed=shared.seed,
         )
     )
     files = {folder / "result.json": text.encode(), **_documents(planned, folder, shared.seed)}
     write_files({**files, **shared.json_files(text)})
     shared.print_json(text)
     console = shared.console()
-    for line in plan_lines(planned):
-        console.print(line)
-    for line in files_lines(list(files)):
-        console.print(line)
+    print_rows(console, [*plan_lines(planned), *files_lines(list(files))])
     cut_short = any(plan.cut_short for plan in planned.plans.values())
     return 0 if all(plan.meets for plan in planned.plans.values()) and not cut_short else 1
 
 
 def planned_product(
-    recipe: Recipe, *, sides: tuple[str, ...], take_number: int | None, shared: Shared
+    recipe: Recipe, *, sides: tuple[FacetName, ...], take_number: int | None, shared: Shared
 ) -> Planned:
     """Plans of the facets, the stacks taken, their curves and the laser they make."""
-    if not any(getattr(recipe, side).windows for side in sides):
+    if not any(recipe.facets[side].windows for side in sides):
         raise InputError(
-            Problem(f"{recipe.path}", f"no windows on {' or '.join(sides)}; add [[front.windows]] to say what to reach")
+            Problem(
+                f"{recipe.path}",
+                f"no windows on {' or '.join(sides)}; add [[front.windows]] to say what to reach",
+            )
         )
     workers = shared.workers or default_workers()
     plans = plan_facets(
@@ -93,10 +99,12 @@ def planned_product(
     )
 
 
-def _with_taken(plans: dict[str, FacetPlan], number: int) -> dict[str, FacetPlan]:
+def _with_taken(plans: dict[FacetName, FacetPlan], number: int) -> dict[FacetName, FacetPlan]:
     searched = [side for side, plan in plans.items() if plan.searched]
     if len(searched) != 1:
-        raise InputError(Problem("--take", "needs --facet front or --facet rear: both facets were searched"))
+        raise InputError(
+            Problem("--take", "needs --facet front or --facet rear: both facets were searched")
+        )
     return {**plans, searched[0]: take(plans[searched[0]], number)}
 
 
@@ -104,18 +112,20 @@ def _progress(quiet: bool):  # type: ignore[no-untyped-def]
     if quiet or not sys.stderr.isatty():
         return None
 
-    def say(side: str, count: int, best: Found | None) -> None:
+    def say(side: FacetName, count: int, best: Found | None) -> None:
         found = "no stack fits" if best is None else f"yield {100 * best.yields.chips:.1f} %"
         print(f"  searched {side}, {count} layers: {found}", file=sys.stderr)
 
     return say
 
 
-def _reflectances(planned: Planned) -> dict[str, list[float]]:
+def _reflectances(planned: Planned) -> dict[FacetName, list[float]]:
     at = np.array([planned.recipe.chip.wavelength_nm])
     return {
         side: [
-            float(facet_spectrum(planned.recipe, side, wavelength_nm=at, searched=plan.stack(f)).R[0])
+            float(
+                facet_spectrum(planned.recipe, side, wavelength_nm=at, searched=plan.stack(f)).R[0]
+            )
             for f in plan.stacks
         ]
         for side, plan in planned.plans.items()
@@ -133,7 +143,10 @@ def _documents(planned: Planned, folder: Path, seed: int) -> dict[Path, bytes]:
             stacks=planned.stacks,
             bands={side: _band(planned, side, seed) for side in planned.curves},
         ),
-        **{folder / path.name: path.read_bytes() for path in recipe.table_paths},
+        **{
+            folder / path.relative_to(recipe.path.parent): path.read_bytes()
+            for path in recipe.table_paths
+        },
     }
     if searched:
         files[folder / "layers-yield.png"] = yield_picture(
@@ -144,13 +157,17 @@ def _documents(planned: Planned, folder: Path, seed: int) -> dict[Path, bytes]:
     return files
 
 
-def _band(planned: Planned, side: str, seed: int) -> Band:
-    recipe, facet = planned.recipe, getattr(planned.recipe, side)
+def _band(planned: Planned, side: FacetName, seed: int) -> Band:
+    recipe = planned.recipe
+    facet = recipe.facets[side]
     grid = default_grid_nm(recipe, side)
     stack = stack_of(facet, planned.stacks[side])
     film = film_rows(stack.materials, facet.films)
     draws = draw_chips(
-        run_errors(recipe, side), film=film, count=BAND_DRAWS, generator=np.random.default_rng([seed, 7])
+        run_errors(recipe, side),
+        film=film,
+        count=BAND_DRAWS,
+        generator=np.random.default_rng([seed, 7]),
     )
     scene = facet_scene(recipe, facet, wavelength_nm=grid)
     low, middle, high = reflectance_quantiles(scene, np.array(stack.nm), film=film, draws=draws)

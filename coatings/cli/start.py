@@ -10,7 +10,9 @@ STARTER = "starter.toml"
 
 
 @click.command(epilog="Example: facetwright start my-chip && facetwright plan my-chip/starter.toml")
-@click.argument("folder", metavar="[DIR]", required=False, default=".", type=click.Path(path_type=Path))
+@click.argument(
+    "folder", metavar="[DIR]", required=False, default=".", type=click.Path(path_type=Path)
+)
 @click.option("--quiet", is_flag=True, help="Print nothing.")
 def start(folder: Path, quiet: bool) -> int:
     """Write a commented starter recipe into DIR (default: here). An existing file is never replaced."""

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterable, Iterator, Mapping
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -15,6 +15,8 @@ from coatings.recipe import FacetName
 from coatings.stack import Stack
 
 if TYPE_CHECKING:
+    from rich.console import Console
+
     from coatings.cli.planning import Planned
     from coatings.curve import FacetCurve
     from coatings.design.plan import FacetPlan
@@ -23,27 +25,43 @@ if TYPE_CHECKING:
     from coatings.recipe import Recipe
 
 MOST_LAYERS_SHOWN = 14
+LASER = "[bold]LASER[/bold]"
+
+Row = tuple[str, str]  # label and text, in console markup
 
 
-def plan_lines(planned: Planned) -> Iterator[str]:
+def print_rows(console: Console, rows: Iterable[Row]) -> None:
+    """Print labelled rows; long text wraps beside its label."""
+    from rich.table import Table
+
+    table = Table.grid(padding=(0, 1))
+    table.add_column(min_width=5, no_wrap=True)
+    table.add_column()
+    for label, text in rows:
+        table.add_row(label, text)
+    console.print(table)
+
+
+def plan_lines(planned: Planned) -> Iterator[Row]:
     """Summary of ``plan``: per facet layers, R, margin, yield and why; then the laser's line."""
     recipe = planned.recipe
-    yield _title(recipe)
+    yield "", _title(recipe)
     yield from _note_lines(recipe)
     for side, plan in planned.plans.items():
         yield from _facet_lines(planned, side, plan)
     yield from laser_lines(planned.laser, recipe)
     for limit in planned.limits:
         if limit.kept is not True:
-            yield f"       [bold]{escape(str(limit))}[/bold]"
+            yield "", f"[bold]{escape(str(limit))}[/bold]"
     kept = [limit for limit in planned.limits if limit.kept]
     if kept:
-        yield f"       limits kept: {', '.join(f'{j.name} {j.limit:g}' for j in kept)}"
+        yield "", f"limits kept: {', '.join(f'{j.name} {j.limit:g}' for j in kept)}"
+    yield from _assumed_lines(planned)
 
 
-def curve_lines(recipe: Recipe, curves: Mapping[FacetName, FacetCurve]) -> Iterator[str]:
+def curve_lines(recipe: Recipe, curves: Mapping[FacetName, FacetCurve]) -> Iterator[Row]:
     """Summary of ``curve``: per facet the shares at the wavelength of operation and every margin."""
-    yield _title(recipe)
+    yield "", _title(recipe)
     yield from _note_lines(recipe)
     at = np.array([recipe.chip.wavelength_nm])
     for side, curve in curves.items():
@@ -52,24 +70,25 @@ def curve_lines(recipe: Recipe, curves: Mapping[FacetName, FacetCurve]) -> Itera
             f"{name} {percent(float(value[0]))}"
             for name, value in (("R", light.R), ("T", light.T), ("A", light.A))
         )
-        yield f"{_side(side)}  at {at[0]:g} nm: {shares}   phase {light.phase_rad[0]:.3f} rad"
+        yield _side(side), f"at {at[0]:g} nm: {shares}   phase {light.phase_rad[0]:.3f} rad"
         for window in curve.windows:
             inside = "met with" if window.margin >= 0 else "[bold]MISSED by[/bold]"
             yield (
-                f"       {escape(window.window.label())}: {inside} {percent(abs(window.margin))}"
-                f"{' to spare' if window.margin >= 0 else ''}, tightest at {window.worst_nm:g} nm"
+                "",
+                f"{escape(window.window.label())}: {inside} {percent(abs(window.margin))}"
+                f"{' to spare' if window.margin >= 0 else ''}, tightest at {window.worst_nm:g} nm",
             )
         if not curve.windows:
-            yield "       no windows"
+            yield "", "no windows"
 
 
-def files_lines(files: list[Path]) -> Iterator[str]:
+def files_lines(files: list[Path]) -> Iterator[Row]:
     """Where the files are."""
     folders: dict[Path, list[str]] = {}
     for path in files:
         folders.setdefault(path.parent, []).append(path.name)
     for folder, names in folders.items():
-        yield f"FILES  {escape(str(folder))}/: {escape(', '.join(names))}"
+        yield "FILES", f"{escape(str(folder))}/: {escape(', '.join(names))}"
 
 
 def percent(share: float) -> str:
@@ -82,10 +101,10 @@ def percent(share: float) -> str:
     return f"{value:.2g} %"
 
 
-def laser_lines(laser: LaserEstimate | None, recipe: Recipe) -> Iterator[str]:
+def laser_lines(laser: LaserEstimate | None, recipe: Recipe) -> Iterator[Row]:
     """The laser's lines: threshold, slopes and split, then what leaves at the drive current."""
     if laser is None:
-        yield "LASER  not estimated: the recipe has no \\[laser] section"
+        yield LASER, "not estimated: the recipe has no \\[laser] section"
         return
     threshold = "none" if laser.threshold_A is None else f"{laser.threshold_A:.3g} A"
     parts = [
@@ -94,16 +113,16 @@ def laser_lines(laser: LaserEstimate | None, recipe: Recipe) -> Iterator[str]:
     ]
     if laser.front_fraction is not None:
         parts.append(f"front share {percent(laser.front_fraction)}")
-    yield f"[bold]LASER[/bold]  {'   '.join(parts)}"
+    yield LASER, "   ".join(parts)
     if laser.front_W is not None and laser.rear_W is not None and recipe.laser is not None:
         parts = [f"{watts(laser.front_W)} front", f"{watts(laser.rear_W)} rear"]
         if laser.facet_load_MW_per_cm2 is not None:
             parts.append(f"load {laser.facet_load_MW_per_cm2:.3g} MW/cm2")
         if laser.wall_plug_efficiency is not None:
             parts.append(f"wall plug {percent(laser.wall_plug_efficiency)}")
-        yield f"       at {recipe.laser.drive_A:g} A: {', '.join(parts)} ({laser.model} model)"
+        yield "", f"at {recipe.laser.drive_A:g} A: {', '.join(parts)} ({laser.model} model)"
     for note in laser.notes:
-        yield f"       {escape(note)}"
+        yield "", f"{escape(note)}"
 
 
 def watts(power_W: float) -> str:
@@ -116,43 +135,52 @@ def _title(recipe: Recipe) -> str:
     return f"[bold]{escape(recipe.title)}[/bold]{revision}"
 
 
-def _note_lines(recipe: Recipe) -> Iterator[str]:
+def _note_lines(recipe: Recipe) -> Iterator[Row]:
     for note in (*recipe.notes, *recipe.material_notes):
-        yield f"[dim]note: {escape(note)}[/dim]"
+        yield "", f"[dim]note: {escape(note)}[/dim]"
+
+
+def _assumed_lines(planned: Planned) -> Iterator[Row]:
+    """What was assumed of the run, each sentence once."""
+    sides: dict[str, list[str]] = {}
+    for side in planned.plans:
+        for sentence in planned.recipe.process_for(side).assumed:
+            sides.setdefault(sentence, []).append(side)
+    for sentence, where in sides.items():
+        yield "RUN", f"[dim]{' and '.join(where)}: {escape(sentence)}[/dim]"
 
 
 def _side(side: FacetName) -> str:
     return f"[bold {SIDE_COLOURS[side]}]{side.upper():<5}[/]"
 
 
-def _facet_lines(planned: Planned, side: FacetName, plan: FacetPlan) -> Iterator[str]:
+def _facet_lines(planned: Planned, side: FacetName, plan: FacetPlan) -> Iterator[Row]:
     recipe, taken, stack = planned.recipe, plan.taken, planned.stacks[side]
     facet = recipe.facets[side]
-    yield f"{_side(side)}  window {escape('; '.join(window.label() for window in facet.windows))}"
+    yield _side(side), f"window {escape('; '.join(window.label() for window in facet.windows))}"
     around = "".join(
         f" ({name}: {', '.join(f'{e.material} {e.nm:g}' for e in part)})"
         for name, part in (("on base", facet.base), ("under cap", facet.cap))
         if part
     )
-    yield f"       {escape(layers_text(stack) + around)}"
+    yield "", f"{escape(layers_text(stack) + around)}"
     at = np.array([recipe.chip.wavelength_nm])
     R = float(facet_spectrum(recipe, side, wavelength_nm=at, searched=stack).R[0])
     y = taken.yields
     verb = "worst margin" if taken.margin >= 0 else "[bold]outside by[/bold]"
-    yield f"       R {percent(R)} at {at[0]:g} nm, {verb} {percent(abs(taken.margin))}"
+    yield "", f"R {percent(R)} at {at[0]:g} nm, {verb} {percent(abs(taken.margin))}"
     yield (
-        f"       [bold]yield {100 * y.chips:.1f} %[/bold] of chips "
-        f"({100 * y.low:.1f} to {100 * y.high:.1f}), {100 * y.runs:.0f} % of runs good"
+        "",
+        f"[bold]yield {100 * y.chips:.1f} %[/bold] of chips "
+        f"({100 * y.low:.1f} to {100 * y.high:.1f}), {100 * y.runs:.0f} % of runs good",
     )
     if plan.searched:
-        yield f"       {escape(why(plan))}"
-        yield f"       yield by layers, %: {_by_layers(plan)}"
-    for sentence in recipe.process_for(side).assumed:
-        yield f"       [dim]{escape(sentence)}[/dim]"
+        yield "", f"{escape(why(plan))}"
+        yield "", f"yield by layers, %: {_by_layers(plan)}"
     if side in planned.shortfalls:
-        yield f"       [bold]not met:[/bold] {escape(shortfall_text(planned.shortfalls[side], plan))}"
+        yield "", f"[bold]not met:[/bold] {escape(shortfall_text(planned.shortfalls[side], plan))}"
     if plan.cut_short:
-        yield "       [bold]cut short:[/bold] the best so far; run again for the full search"
+        yield "", "[bold]cut short:[/bold] the best so far; run again for the full search"
 
 
 def why(plan: FacetPlan) -> str:
@@ -168,7 +196,10 @@ def why(plan: FacetPlan) -> str:
     kind = "margin" if plan.task.errors.none else "yield"
     if plan.stacks[plan.chosen] is plan.stacks[0]:
         return f"taken for the highest {kind}; {more}"
-    if plan.taken.yields.chips >= plan.stacks[0].yields.chips - plan.stacks[0].yields.standard_error:
+    if (
+        plan.taken.yields.chips
+        >= plan.stacks[0].yields.chips - plan.stacks[0].yields.standard_error
+    ):
         return f"taken as the simplest within sampling error of the highest {kind}; {more}"
     return f"taken by choice, not for the highest {kind}; {more}"
 

@@ -89,7 +89,9 @@ def climb(
     """A stack (L,) [nm] near ``nm`` with the largest smooth yield inside the run's limits."""
     low, high = limits.bounds(smooth.film)
     bounds = list(zip(low / NM_UNIT, high / NM_UNIT, strict=True))
-    constraints = [linear_constraint(row * NM_UNIT, room) for row, room in limits.linear(smooth.film)]
+    constraints = [
+        linear_constraint(row * NM_UNIT, room) for row, room in limits.linear(smooth.film)
+    ]
     for stage in stages:
         tau = stage * slack_scale(smooth, nm)
 
@@ -115,5 +117,4 @@ def climb(
 def slack_scale(smooth: SmoothYield, nm: FloatArray) -> float:
     """Spread of the chips' slack, or their common miss where that is larger [reflectance]."""
     slack = smooth.slack(nm)
-    scale = max(float(slack.std()), -0.3 * float(slack.mean()), 1e-9)
-    return scale
+    return max(float(slack.std()), -0.3 * float(slack.mean()), 1e-9)

@@ -4,15 +4,17 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
-from itertools import product
+from itertools import pairwise, product
 
 import numpy as np
 from numpy.typing import NDArray
 
 from coatings.facets import FloatArray, IntArray
-from coatings.recipe import Facet, ProcessErrors, Recipe
+from coatings.recipe import Facet, FacetName, ProcessErrors, Recipe
 
-WAVES_WITHOUT_LIMIT = 1.25  # optical thickness searched where the recipe sets no upper limit, in waves
+WAVES_WITHOUT_LIMIT = (
+    1.25  # optical thickness searched where the recipe sets no upper limit, in waves
+)
 MOST_ORDERS = 96  # orders of materials tried at one layer count; beyond it they are drawn by chance
 
 
@@ -102,7 +104,7 @@ class RunLimits:
 
     def _allowed(self, order: tuple[int, ...]) -> bool:
         return (
-            all(a != b for a, b in zip(order, order[1:], strict=False))
+            all(a != b for a, b in pairwise(order))
             and self.first in (None, order[0])
             and self.last in (None, order[-1])
             and self.possible(np.array(order, dtype=np.intp))
@@ -123,9 +125,9 @@ class RunLimits:
         yield from (np.array(o, dtype=np.intp) for o in sorted(seen) if self._allowed(o))
 
 
-def run_limits(recipe: Recipe, side: str) -> RunLimits:
+def run_limits(recipe: Recipe, side: FacetName) -> RunLimits:
     """Limits of a facet's run from its recipe; ``side`` is "front" or "rear"."""
-    facet = getattr(recipe, side)
+    facet = recipe.facets[side]
     process = recipe.process_for(side)
     films = facet.films
     step = 10.0**-process.decimals_nm
@@ -155,7 +157,11 @@ def run_limits(recipe: Recipe, side: str) -> RunLimits:
 
 def _free_thickness_nm(recipe: Recipe, film: str) -> float:
     wavelength = recipe.chip.wavelength_nm
-    return WAVES_WITHOUT_LIMIT * wavelength / float(recipe.material(film).nk(np.array([wavelength])).real[0])
+    return (
+        WAVES_WITHOUT_LIMIT
+        * wavelength
+        / float(recipe.material(film).nk(np.array([wavelength])).real[0])
+    )
 
 
 def _stress_room(facet: Facet, process: ProcessErrors) -> tuple[float, float] | None:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, replace
+from typing import Literal
 
 import numpy as np
 
@@ -83,7 +84,9 @@ class FacetModel:
         sign = constraints.sign
         return sign * (constraints.bound - quantity), -sign[:, None] * slope
 
-    def _gradient(self, nm: FloatArray, film: IntArray, of: str) -> tuple[FloatArray, FloatArray]:
+    def _gradient(
+        self, nm: FloatArray, film: IntArray, of: Literal["R", "A"]
+    ) -> tuple[FloatArray, FloatArray]:
         value, slope = gradient(
             self.goal.scene, self.frame.nm(nm), film=self.frame.film(film), of=of
         )

@@ -14,14 +14,14 @@ SWEEPS = 6
 Score = Callable[[FloatArray], FloatArray]  # stacks (S, L) [nm] -> (S,), higher is better
 
 
-def best_ordered(
-    nm: FloatArray, *, film: IntArray, limits: RunLimits, score: Score
-) -> FloatArray:
+def best_ordered(nm: FloatArray, *, film: IntArray, limits: RunLimits, score: Score) -> FloatArray:
     """Best stack (L,) [nm] on the grid of ordered thicknesses around ``nm``: greedy over single steps
     of every layer and opposite and equal steps of every two."""
     here = _kept(limits.rounded(_corners(nm, limits.step_nm), film=film), limits, film)
     if not len(here):
-        here = limits.rounded(np.maximum(nm - limits.step_nm, limits.bounds(film)[0]), film=film)[None]
+        here = limits.rounded(np.maximum(nm - limits.step_nm, limits.bounds(film)[0]), film=film)[
+            None
+        ]
     best, best_score = _best(here, score)
     moves = _moves(len(nm)) * limits.step_nm
     for _ in range(SWEEPS):

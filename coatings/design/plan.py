@@ -16,13 +16,12 @@ from coatings.design.model import FacetModel, facet_frame
 from coatings.design.search import Found, Task, judge, search_count
 from coatings.design.spread import run_errors
 from coatings.design.windows import facet_goal
-from coatings.facets import film_rows
 from coatings.errors import InputError, Problem
 from coatings.executors import run_all
-from coatings.recipe import Facet, Recipe
+from coatings.facets import SIDES, film_rows
+from coatings.recipe import Facet, FacetName, Recipe
 from coatings.stack import Stack
 
-SIDES = ("front", "rear")
 SECOND_DESIGN_LOSS = 0.05  # a second design of a layer count is listed if it loses no more yield
 
 Progress = Callable[[str, int, Found | None], None]
@@ -36,7 +35,7 @@ class FacetPlan:
     of given layers; ``cut_short`` that the search was interrupted.
     """
 
-    side: str
+    side: FacetName
     task: Task
     stacks: tuple[Found, ...]
     chosen: int
@@ -59,9 +58,9 @@ class FacetPlan:
         return Stack.of([films[row] for row in found.film], [float(nm) for nm in found.nm])
 
 
-def facet_task(recipe: Recipe, side: str, *, seed: int) -> Task:
+def facet_task(recipe: Recipe, side: FacetName, *, seed: int) -> Task:
     """Task of a facet that has windows; ``side`` is "front" or "rear"."""
-    facet: Facet = getattr(recipe, side)
+    facet = recipe.facets[side]
     return Task(
         side=side,
         model=FacetModel(facet_goal(recipe, side), facet_frame(facet)),
@@ -74,31 +73,31 @@ def facet_task(recipe: Recipe, side: str, *, seed: int) -> Task:
 def plan_facets(
     recipe: Recipe,
     *,
-    sides: tuple[str, ...] = SIDES,
+    sides: tuple[FacetName, ...] = SIDES,
     seed: int,
     workers: int,
     progress: Progress | None = None,
-) -> dict[str, FacetPlan]:
+) -> dict[FacetName, FacetPlan]:
     """Plans of the facets with windows, by side.
 
     Raises InputError when a facet's limits leave no stack to search, or when the work was interrupted
     before the first stack of a facet was found.
     """
-    tasks = {s: facet_task(recipe, s, seed=seed) for s in sides if getattr(recipe, s).windows}
-    searched = {s: t for s, t in tasks.items() if getattr(recipe, s).is_searchable}
+    tasks = {s: facet_task(recipe, s, seed=seed) for s in sides if recipe.facets[s].windows}
+    searched = {s: t for s, t in tasks.items() if recipe.facets[s].is_searchable}
     found, cut_short = _search(searched, workers, progress)
     plans = {}
     for side, task in tasks.items():
         if side in searched:
             plans[side] = _shortlist(task, found[side], cut_short=cut_short)
         else:
-            plans[side] = _judged_as_given(task, getattr(recipe, side))
+            plans[side] = _judged_as_given(task, recipe.facets[side])
     return plans
 
 
 def _search(
-    tasks: dict[str, Task], workers: int, progress: Progress | None
-) -> tuple[dict[str, list[Found]], bool]:
+    tasks: dict[FacetName, Task], workers: int, progress: Progress | None
+) -> tuple[dict[FacetName, list[Found]], bool]:
     pieces = [
         (task, count) for task in tasks.values() for count in range(1, task.limits.most_layers + 1)
     ]
@@ -109,7 +108,7 @@ def _search(
             progress(piece[0].side, piece[1], found[0] if found else None)
 
     outcome = run_all(_search_piece, pieces, workers=workers, on_done=on_done)
-    found: dict[str, list[Found]] = {side: [] for side in tasks}
+    found: dict[FacetName, list[Found]] = {side: [] for side in tasks}
     for (task, _), result in zip(pieces, outcome.results, strict=True):
         found[task.side] += result or []
     for side, designs in found.items():
@@ -122,7 +121,7 @@ def _search_piece(piece: tuple[Task, int]) -> list[Found]:
     return search_count(*piece)
 
 
-def _nothing_found(side: str, limits: RunLimits, cut_short: bool) -> Problem:
+def _nothing_found(side: FacetName, limits: RunLimits, cut_short: bool) -> Problem:
     if cut_short:
         return Problem(side, "stopped before the first stack was found; nothing was written")
     thinnest = min(limits.thinnest_nm[list(limits.palette)])
@@ -136,10 +135,14 @@ def _nothing_found(side: str, limits: RunLimits, cut_short: bool) -> Problem:
 def _shortlist(task: Task, found: list[Found], *, cut_short: bool) -> FacetPlan:
     kept: list[Found] = []
     for count in sorted({len(f.nm) for f in found}):
-        designs = sorted((f for f in found if len(f.nm) == count), key=lambda f: f.rank, reverse=True)
+        designs = sorted(
+            (f for f in found if len(f.nm) == count), key=lambda f: f.rank, reverse=True
+        )
         kept.append(designs[0])
         kept += [
-            f for f in designs[1:2] if f.yields.chips >= designs[0].yields.chips - SECOND_DESIGN_LOSS
+            f
+            for f in designs[1:2]
+            if f.yields.chips >= designs[0].yields.chips - SECOND_DESIGN_LOSS
         ]
     kept = ranked(kept, by_margin=task.errors.none)
     return FacetPlan(task.side, task, tuple(kept), choose(kept, task), True, cut_short)

@@ -9,6 +9,7 @@ wavelength grid shows that the thin one missed them.
 from __future__ import annotations
 
 import numpy as np
+from numpy.typing import NDArray
 from scipy.optimize import minimize
 
 from coatings.design.limits import RunLimits
@@ -30,7 +31,9 @@ def least_squares(
     cost = np.einsum("sk,sk->s", residual, residual)
     damping = np.full(len(nm), 1e-2)
     for _ in range(iterations):
-        step = _damped_step(residual, jacobian, damping, pinned=_pinned(nm, low, high, residual, jacobian))
+        step = _damped_step(
+            residual, jacobian, damping, pinned=_pinned(nm, low, high, residual, jacobian)
+        )
         trial = limits.inside(nm + step, film=film)
         trial_residual, trial_jacobian = _residuals(model, trial, film)
         trial_cost = np.einsum("sk,sk->s", trial_residual, trial_residual)
@@ -58,20 +61,25 @@ def _residuals(model: FacetModel, nm: FloatArray, film: IntArray) -> tuple[Float
 
 def _pinned(
     nm: FloatArray, low: FloatArray, high: FloatArray, residual: FloatArray, jacobian: FloatArray
-) -> FloatArray:
+) -> NDArray[np.bool_]:
     downhill = -np.einsum("skl,sk->sl", jacobian, residual)
-    return ((nm <= low + 1e-9) & (downhill < 0)) | ((nm >= high - 1e-9) & (downhill > 0))
+    pinned: NDArray[np.bool_] = ((nm <= low + 1e-9) & (downhill < 0)) | (
+        (nm >= high - 1e-9) & (downhill > 0)
+    )
+    return pinned
 
 
 def _damped_step(
-    residual: FloatArray, jacobian: FloatArray, damping: FloatArray, *, pinned: FloatArray
+    residual: FloatArray, jacobian: FloatArray, damping: FloatArray, *, pinned: NDArray[np.bool_]
 ) -> FloatArray:
     free = np.where(pinned[:, None, :], 0.0, jacobian)
     normal = np.einsum("skl,skm->slm", free, free)
     diagonal = np.einsum("sll->sl", normal)
     lift = damping[:, None] * (diagonal + 1e-6 * diagonal.max(axis=1, keepdims=True)) + 1e-14
     normal = normal + lift[:, :, None] * np.eye(normal.shape[1])
-    step: FloatArray = np.linalg.solve(normal, -np.einsum("skl,sk->sl", free, residual)[:, :, None])[:, :, 0]
+    step: FloatArray = np.linalg.solve(
+        normal, -np.einsum("skl,sk->sl", free, residual)[:, :, None]
+    )[:, :, 0]
     return step
 
 
@@ -117,7 +125,8 @@ def _epigraph(model: FacetModel, nm: FloatArray, film: IntArray, limits: RunLimi
         return cache[key]
 
     def above(x: FloatArray) -> FloatArray:
-        return slack(x)[0] - x[-1]
+        gap: FloatArray = slack(x)[0] - x[-1]
+        return gap
 
     def above_slope(x: FloatArray) -> FloatArray:
         slope = slack(x)[1]

@@ -100,7 +100,9 @@ def search_count(task: Task, count: int) -> list[Found]:
             for c in listed
             if c.score >= listed[0].score - FINE_LOSS
         ]
-    judged = [judge(task, c.film, c.nm) for c in _distinct(ordered, most=LISTED, apart_nm=_apart_nm(task))]
+    judged = [
+        judge(task, c.film, c.nm) for c in _distinct(ordered, most=LISTED, apart_nm=_apart_nm(task))
+    ]
     return sorted(judged, key=lambda f: f.rank, reverse=True)
 
 
@@ -192,7 +194,10 @@ def _ordered_by_yield(
     """A finished stack climbed once more under many draws and put on the grid of ordered thicknesses."""
     film, limits = candidate.film, task.limits
     draws = draw_mirrored(
-        task.errors, film=thin.frame.film(film), count=_effort(len(film)).fine_draws, generator=generator
+        task.errors,
+        film=thin.frame.film(film),
+        count=_effort(len(film)).fine_draws,
+        generator=generator,
     )
     smooth = SmoothYield(thin, film, draws)
     if not (smooth.slack(candidate.nm) >= 0.0).any():

@@ -17,7 +17,7 @@ import numpy as np
 from coatings.design.model import FacetModel
 from coatings.facets import FloatArray, IntArray
 from coatings.optics import Scene, reflectance
-from coatings.recipe import Recipe
+from coatings.recipe import FacetName, Recipe
 
 RUN_SHARE = 0.95  # share of a run's chips that must be inside for the run to count
 CHUNK = 2048  # draws evaluated at once: keeps arrays in cache
@@ -63,14 +63,17 @@ class Draws:
     def part(self, rows: slice) -> Draws:
         """Some of the draws."""
         return Draws(
-            self.factor[rows], self.offset_nm[rows], self.film_shift[rows], self.incident_shift[rows]
+            self.factor[rows],
+            self.offset_nm[rows],
+            self.film_shift[rows],
+            self.incident_shift[rows],
         )
 
 
-def run_errors(recipe: Recipe, side: str) -> RunErrors:
+def run_errors(recipe: Recipe, side: FacetName) -> RunErrors:
     """Errors of a facet's run from its recipe; ``side`` is "front" or "rear"."""
     process = recipe.process_for(side)
-    films = getattr(recipe, side).films
+    films = recipe.facets[side].films
     at = np.array([recipe.chip.wavelength_nm])
     return RunErrors(
         run=process.run_percent / 100.0,
@@ -187,7 +190,9 @@ def sampled_yield(
     return Yield(share, error, low, high, float(good))
 
 
-def wilson_interval(passed: int, count: int, *, z: float = 1.959963984540054) -> tuple[float, float]:
+def wilson_interval(
+    passed: int, count: int, *, z: float = 1.959963984540054
+) -> tuple[float, float]:
     """Wilson's score interval of a share: E. B. Wilson, J. Am. Stat. Assoc. 22, 209 (1927), from memory.
 
     Parameters: ``passed`` of ``count`` draws; ``z`` normal quantile (95 % two-sided by default).

@@ -124,7 +124,10 @@ def _inward_reflection(
     """Reflection seen inside the first searched layer at its outer face (S,)."""
     frame = model.frame
     admittance = np.full(len(nm), spot.outside, dtype=complex)
-    outer = [(spot.films[row], np.full(len(nm), t)) for row, t in zip(frame.cap_film, frame.cap_nm, strict=True)]
+    outer = [
+        (spot.films[row], np.full(len(nm), t))
+        for row, t in zip(frame.cap_film, frame.cap_nm, strict=True)
+    ]
     inner = [(spot.films[row], nm[:, j]) for j, row in enumerate(film) if j > 0]
     for n, thickness in reversed(inner + outer):
         admittance = _through(admittance, n, 2 * np.pi * n * thickness / spot.wavelength_nm)
@@ -150,7 +153,10 @@ def _bilinear(
         index = spot.films[row]
         delta = 2 * np.pi * index * thickness / spot.wavelength_nm
         layer = np.array(
-            [[np.cos(delta), -1j * np.sin(delta) / index], [-1j * index * np.sin(delta), np.cos(delta)]]
+            [
+                [np.cos(delta), -1j * np.sin(delta) / index],
+                [-1j * index * np.sin(delta), np.cos(delta)],
+            ]
         )
         matrix = layer @ matrix
     top = spot.incident * matrix[0] - matrix[1]

@@ -15,7 +15,7 @@ from numpy.typing import NDArray
 
 from coatings.facets import FloatArray, IntArray, facet_scene
 from coatings.optics import Scene, reflectance, response
-from coatings.recipe import Facet, Recipe, Window
+from coatings.recipe import Facet, FacetName, Recipe, Window
 
 GRID_STEP_NM = 1.0
 
@@ -98,7 +98,7 @@ class Goal:
                 outside=scene.outside[points],
                 films=scene.films[:, points],
                 q=None if scene.q is None else scene.q[points],
-                tm=scene.tm[points],
+                tm=np.asarray(scene.tm)[points],
             ),
             films=self.films,
             low=low,
@@ -143,7 +143,9 @@ class Goal:
         """Reflectance (P,) in the middle of two bounds; 0 under a ceiling alone, 1 above a floor alone."""
         floored, capped = self.low > 0.0, self.high < 1.0
         middle = 0.5 * (self.low + self.high)
-        return np.where(floored & capped, middle, np.where(capped, 0.0, np.where(floored, 1.0, middle)))
+        return np.where(
+            floored & capped, middle, np.where(capped, 0.0, np.where(floored, 1.0, middle))
+        )
 
     @property
     def width(self) -> FloatArray:
@@ -154,12 +156,12 @@ class Goal:
         return np.maximum(np.where(floored & capped, half, one_sided), 1e-9)
 
 
-def facet_goal(recipe: Recipe, side: str) -> Goal:
+def facet_goal(recipe: Recipe, side: FacetName) -> Goal:
     """Goal of a facet over all its windows, on the full grid.
 
     Parameters: ``recipe``; ``side`` "front" or "rear". The facet must have at least one window.
     """
-    facet: Facet = getattr(recipe, side)
+    facet = recipe.facets[side]
     grids = [window_grid_nm(window.band_nm) for window in facet.windows]
     counts = [len(grid) for grid in grids]
     limits = np.array([bounds(window) for window in facet.windows])
@@ -190,5 +192,6 @@ def bounds(window: Window) -> tuple[float, float, float]:
 
 def _incident(recipe: Recipe, facet: Facet, grids: list[FloatArray]) -> FloatArray:
     indices = [recipe.window_index(w, g) for w, g in zip(facet.windows, grids, strict=True)]
-    return np.concatenate([np.broadcast_to(i, g.shape) for i, g in zip(indices, grids, strict=True)])
-
+    return np.concatenate(
+        [np.broadcast_to(i, g.shape) for i, g in zip(indices, grids, strict=True)]
+    )

@@ -7,11 +7,11 @@ from collections.abc import Mapping
 import tomlkit
 from tomlkit.items import Table
 
-from coatings.recipe import Recipe
+from coatings.recipe import FacetName, Recipe
 from coatings.stack import Stack
 
 
-def chosen_recipe(recipe: Recipe, stacks: Mapping[str, Stack]) -> str:
+def chosen_recipe(recipe: Recipe, stacks: Mapping[FacetName, Stack]) -> str:
     """Text of the recipe with ``layers`` of each side in ``stacks`` replaced; all else as written."""
     document = tomlkit.parse(recipe.text)
     for side, stack in stacks.items():
@@ -30,7 +30,11 @@ def _put(table: Table, layers: tomlkit.items.Array) -> None:
     if "layers" in table:
         table["layers"] = layers
         return
-    later = [(key, table[key]) for key in list(table) if isinstance(table[key], tomlkit.items.AoT | Table)]
+    later = [
+        (key, table[key])
+        for key in list(table)
+        if isinstance(table[key], tomlkit.items.AoT | Table)
+    ]
     for key, _ in later:
         table.remove(key)
     table.append("layers", layers)

@@ -18,7 +18,9 @@ def check_folder(folder: Path, *, option: str = "--out") -> None:
     while not os.path.lexists(nearest) and nearest != nearest.parent:
         nearest = nearest.parent
     if not nearest.is_dir():
-        raise OutputError(Problem(option, f"{nearest} is not a folder; give a folder to write into"))
+        raise OutputError(
+            Problem(option, f"{nearest} is not a folder; give a folder to write into")
+        )
     if not os.access(nearest, os.W_OK | os.X_OK):
         raise OutputError(Problem(option, f"{nearest} can't be written; give another folder"))
 
@@ -30,7 +32,9 @@ def check_file(path: Path, *, option: str) -> None:
     if os.path.lexists(path) and not path.is_file():
         raise OutputError(Problem(option, f"{path} is not a regular file; give another"))
     if not path.parent.is_dir():
-        raise OutputError(Problem(option, f"{path.parent} is not a folder; create it or give another"))
+        raise OutputError(
+            Problem(option, f"{path.parent} is not a folder; create it or give another")
+        )
     if not os.access(path.parent, os.W_OK | os.X_OK):
         raise OutputError(Problem(option, f"{path.parent} can't be written; give another folder"))
 
@@ -50,7 +54,9 @@ def write_files(files: dict[Path, bytes]) -> None:
     except OSError as error:
         where = str(error.filename or "output")
         reason = error.strerror or str(error)
-        raise OutputError(Problem(where, f"can't be written: {reason}; give another --out")) from None
+        raise OutputError(
+            Problem(where, f"can't be written: {reason}; give another --out")
+        ) from None
     finally:
         for temporary, _ in staged:
             Path(temporary).unlink(missing_ok=True)

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from typing import Any
 
 INK = "#22272e"
 QUIET = "#8b939c"
@@ -17,7 +18,7 @@ FILM_COLOURS = (
     "#b8bd5f", "#7b5d4a",
 )  # fmt: skip
 
-STYLE = {
+STYLE: Any = {
     "font.size": 9.0,
     "font.family": "sans-serif",
     "axes.edgecolor": INK,

@@ -24,14 +24,14 @@ from coatings.documents.plots import (
 )
 from coatings.facets import stack_of
 from coatings.laser import PowerCurrent
-from coatings.recipe import Facet, Recipe, Window
+from coatings.recipe import FacetName, Recipe, Window
 from coatings.stack import Stack
 from materials import Material
 
 
 def spectrum_picture(
-    recipe: Recipe, curves: Mapping[str, FacetCurve], *, stacks: Mapping[str, Stack],
-    bands: Mapping[str, Band],
+    recipe: Recipe, curves: Mapping[FacetName, FacetCurve], *, stacks: Mapping[FacetName, Stack],
+    bands: Mapping[FacetName, Band],
 ) -> bytes:  # fmt: skip
     """One row a facet: the layers above, the spectrum with gates and spread below."""
     with mpl.rc_context(STYLE):
@@ -50,7 +50,7 @@ def spectrum_picture(
         return _png(figure)
 
 
-def yield_picture(plans: Mapping[str, FacetPlan]) -> bytes:
+def yield_picture(plans: Mapping[FacetName, FacetPlan]) -> bytes:
     """Layers against yield, one panel a facet."""
     with mpl.rc_context(STYLE):
         figure = Figure(figsize=(7.6, 3.2), layout="constrained")
@@ -89,11 +89,15 @@ def material_picture(material: Material) -> bytes:
         return _png(figure)
 
 
-def _layers(ax: Axes, recipe: Recipe, side: str, searched: Stack | None) -> None:
-    facet: Facet = getattr(recipe, side)
+def _layers(ax: Axes, recipe: Recipe, side: FacetName, searched: Stack | None) -> None:
+    facet = recipe.facets[side]
     at = np.array([recipe.chip.wavelength_nm])
     layers = [
-        (layer.material, layer.nm, float(recipe.material(layer.material).nk(at).real[0]) * layer.nm / at[0])
+        (
+            layer.material,
+            layer.nm,
+            float(recipe.material(layer.material).nk(at).real[0]) * layer.nm / at[0],
+        )
         for layer in stack_of(facet, searched)
     ]
     outside = facet.outside if isinstance(facet.outside, str) else f"n = {facet.outside:g}"

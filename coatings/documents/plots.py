@@ -16,7 +16,7 @@ from coatings.design.plan import FacetPlan
 from coatings.documents.look import CHIP, GATE, INK, QUIET, SIDE_COLOURS
 from coatings.facets import FacetSpectrum, FloatArray
 from coatings.laser import PowerCurrent
-from coatings.recipe import Window
+from coatings.recipe import FacetName, Window
 
 
 @dataclass(frozen=True)
@@ -29,7 +29,9 @@ class Band:
     p95: FloatArray
 
 
-def draw_spectrum(ax: Axes, spectrum: FacetSpectrum, *, side: str, band: Band | None = None) -> Line2D:
+def draw_spectrum(
+    ax: Axes, spectrum: FacetSpectrum, *, side: FacetName, band: Band | None = None
+) -> Line2D:
     """R in percent against wavelength, with the band that nine of ten chips keep to."""
     colour = SIDE_COLOURS[side]
     if band is not None:
@@ -37,7 +39,9 @@ def draw_spectrum(ax: Axes, spectrum: FacetSpectrum, *, side: str, band: Band | 
             band.wavelength_nm, 100 * band.p05, 100 * band.p95, color=colour, alpha=0.22, lw=0,
             label="9 of 10 chips",
         )  # fmt: skip
-    (line,) = ax.plot(spectrum.wavelength_nm, 100 * spectrum.R, color=colour, lw=1.8, label="as ordered")
+    (line,) = ax.plot(
+        spectrum.wavelength_nm, 100 * spectrum.R, color=colour, lw=1.8, label="as ordered"
+    )
     ax.set_xlabel("wavelength (nm)")
     ax.set_ylabel("reflectance into the chip (%)")
     ax.set_xlim(float(spectrum.wavelength_nm[0]), float(spectrum.wavelength_nm[-1]))
@@ -64,7 +68,11 @@ def draw_gates(ax: Axes, windows: Sequence[Window]) -> list[Rectangle]:
 
 
 def draw_layers(
-    ax: Axes, layers: Sequence[tuple[str, float, float]], *, outside: str, colours: Mapping[str, str]
+    ax: Axes,
+    layers: Sequence[tuple[str, float, float]],
+    *,
+    outside: str,
+    colours: Mapping[str, str],
 ) -> list[Rectangle]:
     """Layers to optical scale between chip (left) and outside (right).
 
@@ -111,7 +119,9 @@ def draw_yields(ax: Axes, plan: FacetPlan) -> PathCollection:
     faces = [colour if leading else "white" for leading in is_best]
     points = ax.scatter(counts, yields, s=26, color=faces, edgecolor=colour, zorder=3)
     taken = plan.chosen
-    ax.scatter(counts[taken], yields[taken], s=130, facecolor="none", edgecolor=INK, lw=1.4, zorder=4)
+    ax.scatter(
+        counts[taken], yields[taken], s=130, facecolor="none", edgecolor=INK, lw=1.4, zorder=4
+    )
     ax.annotate(
         f"{yields[taken]:.1f} %", (counts[taken], yields[taken]), xytext=(-9, -3),
         textcoords="offset points", ha="right", va="top", fontsize=9, color=INK, fontweight="bold",
@@ -124,9 +134,7 @@ def draw_yields(ax: Axes, plan: FacetPlan) -> PathCollection:
     return points
 
 
-def draw_power(
-    ax: Axes, power: PowerCurrent, *, side: str, drive_A: float | None
-) -> Line2D:
+def draw_power(ax: Axes, power: PowerCurrent, *, side: FacetName, drive_A: float | None) -> Line2D:
     """Power of one facet against current; the power at the operating current is written out."""
     watts = power.front_W if side == "front" else power.rear_W
     scale, unit = (1.0, "W") if float(watts.max()) >= 0.5 else (1e3, "mW")

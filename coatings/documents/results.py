@@ -12,7 +12,7 @@ from coatings.design.plan import FacetPlan
 from coatings.design.search import Found
 from coatings.facets import FloatArray
 from coatings.laser import LaserEstimate
-from coatings.recipe import Facet, Recipe
+from coatings.recipe import Facet, FacetName, Recipe
 
 TOOL = "facetwright"
 
@@ -34,10 +34,12 @@ def to_text(result: Json) -> str:
     return json.dumps(result, indent=1, allow_nan=False, ensure_ascii=False) + "\n"
 
 
-def curve_result(recipe: Recipe, curves: Mapping[str, FacetCurve], *, seed: int, flat: bool) -> Json:
+def curve_result(
+    recipe: Recipe, curves: Mapping[FacetName, FacetCurve], *, seed: int, flat: bool
+) -> Json:
     """Result of ``curve``: one facet ``flat``, or both by side."""
-    parts = {side: _curve(curve) for side, curve in curves.items()}
-    body = next(iter(parts.values())) if flat else parts
+    parts: Json = {side: _curve(curve) for side, curve in curves.items()}
+    body: Json = next(iter(parts.values())) if flat else parts
     return {**head(recipe, seed=seed), **body}
 
 
@@ -62,10 +64,10 @@ def _curve(curve: FacetCurve) -> Json:
 
 def plan_result(
     recipe: Recipe,
-    plans: Mapping[str, FacetPlan],
+    plans: Mapping[FacetName, FacetPlan],
     laser: LaserEstimate | None,
     *,
-    reflectance: Mapping[str, list[float]],
+    reflectance: Mapping[FacetName, list[float]],
     seed: int,
 ) -> Json:
     """Result of ``plan``; ``reflectance`` holds R at the wavelength of operation of each listed stack."""

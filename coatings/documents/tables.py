@@ -7,11 +7,12 @@ from collections.abc import Mapping
 from io import StringIO
 
 from coatings.curve import FacetCurve
+from coatings.recipe import FacetName
 
 CURVE_HEAD = ("facet", "wavelength_nm", "R", "T", "A", "S", "phase_rad")
 
 
-def curve_csv(curves: Mapping[str, FacetCurve]) -> str:
+def curve_csv(curves: Mapping[FacetName, FacetCurve]) -> str:
     """Spectra of one or both facets, one row a facet and wavelength; shares as fractions."""
     out = StringIO()
     writer = csv.writer(out, lineterminator="\n")

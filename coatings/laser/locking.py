@@ -140,8 +140,9 @@ class ExternalEstimate:
     """The laser with its reflector.
 
     ``laser`` holds the figures with front and reflector as one facet: its front power is that
-    beyond the reflector. ``R_least``, ``R_most``: the range under coherent feedback. ``locking_margin_per_cm`` and ``R_front_locks_below`` are None where nothing
-    competes or nothing locks.
+    beyond the reflector. ``R_least``, ``R_most``: the range under coherent feedback.
+    ``locking_margin_per_cm`` and ``R_front_locks_below`` are None where nothing competes or
+    nothing locks.
     """
 
     laser: LaserEstimate

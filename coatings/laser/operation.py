@@ -13,7 +13,7 @@ from coatings.laser.axial import axial_ratio_kernel
 from coatings.laser.checks import FloatArray, Real, not_negative, same_shape
 from coatings.laser.chip import LaserChip
 from coatings.laser.facets import FacetLight
-from coatings.laser.heat import lowest_junction_C
+from coatings.laser.heat import Index, lowest_junction_C
 from coatings.laser.power import (
     FacetSplit,
     cooled_slope_W_per_A,
@@ -31,7 +31,7 @@ from coatings.laser.threshold import (
 AXIAL_MATTERS = 0.01
 """Change of power beyond which the axial model is taken by itself."""
 
-_ROUNDS = 30
+_ROUNDS = 8
 _SETTLED_K = 1e-5
 
 
@@ -99,22 +99,41 @@ class _Cases:
     R_front: FloatArray
     R_rear: FloatArray
     factor: FloatArray
+    follows_heat: bool = False
+
+    def coupled(self, index: Index) -> _Cases:
+        """The cases at ``index``, their axial factor taken at each temperature they are asked."""
+        return _Cases(
+            chip=self.chip,
+            current=self.current[index],
+            threshold=self.threshold[index],
+            slope=self.slope[index],
+            leaving=self.leaving[index],
+            R_front=self.R_front[index],
+            R_rear=self.R_rear[index],
+            factor=np.ones(index.size),
+            follows_heat=True,
+        )
 
     def axial_ratio(self, junction_C: FloatArray) -> FloatArray:
         """Factor that the axial field has on the power at a junction temperature."""
         rise = junction_C - self.chip.cold_C
         return axial_ratio_kernel(self.chip, self.current, self.R_front, self.R_rear, rise)
 
-    def lost_W(self, junction_C: FloatArray, index: NDArray[np.intp]) -> FloatArray:
+    def lost_W(self, junction_C: FloatArray, index: Index) -> FloatArray:
         """All light lost at both facets at a junction temperature."""
         rise = junction_C - self.chip.cold_C
         threshold = warmed_threshold_A(self.chip, self.threshold[index], rise)
         slope = cooled_slope_W_per_A(self.chip, self.slope[index], rise)
         knee = np.full(rise.shape, self.chip.spontaneous_factor)
         excess = excess_current_kernel_A(self.current[index], threshold, knee)
-        return self.factor[index] * slope * excess
+        factor = self.factor[index]
+        if self.follows_heat:
+            at = (self.current[index], self.R_front[index], self.R_rear[index])
+            factor = axial_ratio_kernel(self.chip, *at, rise)
+        return factor * slope * excess
 
-    def leaving_W(self, junction_C: FloatArray, index: NDArray[np.intp]) -> FloatArray:
+    def leaving_W(self, junction_C: FloatArray, index: Index) -> FloatArray:
         """Light that leaves both facets at a junction temperature."""
         return self.leaving[index] * self.lost_W(junction_C, index)
 
@@ -194,28 +213,43 @@ def operate(
     need = threshold_gain_per_cm(loss, internal_loss_per_cm=chip.internal_loss_per_cm)
     threshold = threshold_current_A(chip, threshold_gain_per_cm=need)
     slope = total_slope_W_per_A(chip, mirror_loss_per_cm=loss)
-    ones = np.ones(current.shape)
-    rows = [np.ravel(p) for p in (current, threshold, slope, leaving, R_front, R_rear, ones)]
-    cases = _Cases(chip, *rows)
+    cases = _Cases(
+        chip=chip,
+        current=np.ravel(current),
+        threshold=np.ravel(threshold),
+        slope=np.ravel(slope),
+        leaving=np.ravel(leaving),
+        R_front=np.ravel(R_front),
+        R_rear=np.ravel(R_rear),
+        factor=np.ones(current.size),
+    )
     cases, junction, taken = _settle(cases, model)
     return _operation(cases, split, junction, taken, current.shape)
 
 
 def _settle(cases: _Cases, model: FieldModel | None) -> tuple[_Cases, FloatArray, FieldModel]:
-    """Cases with the axial factor that belongs to their temperature, and that temperature."""
+    """Cases with the axial factor that belongs to their temperature, and that temperature.
+
+    The factor hardly moves with temperature (1e-6 a kelvin), so two or three rounds with the
+    factor of the round before are enough. Where heat is about to put the laser out they may swing
+    between lit and dark: there the field is solved anew at every step of the climb.
+    """
     junction = cases.junction_C()
     if model is FieldModel.UNIFORM:
         return cases, junction, FieldModel.UNIFORM
     factor = cases.axial_ratio(junction)
     if model is None and np.all(np.abs(factor - 1.0) <= AXIAL_MATTERS):
         return cases, junction, FieldModel.UNIFORM
-    # The factor hardly moves with temperature (1e-6 a kelvin): two or three rounds are enough.
     for _ in range(_ROUNDS):
         cases = replace(cases, factor=factor)
         before, junction = junction, cases.junction_C()
-        if np.all(np.abs(junction - before) <= _SETTLED_K):
+        open_ = np.flatnonzero(np.abs(junction - before) > _SETTLED_K)
+        if open_.size == 0:
             break
         factor = cases.axial_ratio(junction)
+    else:
+        junction[open_] = cases.coupled(open_).junction_C()
+        cases = replace(cases, factor=cases.axial_ratio(junction))
     return cases, junction, FieldModel.AXIAL
 
 

@@ -8,7 +8,7 @@ from coatings.optics.gradients import (
     weighted_gradient,
 )
 from coatings.optics.scene import Scene
-from coatings.optics.spectrum import Response, reflectance, response
+from coatings.optics.spectrum import Response, reflectance, reflection, response
 from coatings.optics.threads import get_threads, set_threads
 
 __all__ = [
@@ -21,6 +21,7 @@ __all__ = [
     "group_delay",
     "index_gradient",
     "reflectance",
+    "reflection",
     "response",
     "set_threads",
     "weighted_gradient",

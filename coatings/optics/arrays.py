@@ -23,6 +23,10 @@ def refuse(where: str, what: str) -> ArrayError:
 
 def numbers(values: ArrayLike, where: str, dtype: type[np.generic], axes: int) -> NDArray[Any]:
     """``values`` as a contiguous and writable array; the same one when it is that already."""
+    if type(values) is np.ndarray and values.dtype == dtype and values.ndim == axes:
+        flags = values.flags
+        if flags.c_contiguous and flags.writeable:
+            return values
     try:
         raw = np.asarray(values)
     except ValueError as error:

@@ -1,11 +1,12 @@
-"""A batch of stacks on a scene: checked at the door, laid out as the kernels take it."""
+"""A batch of stacks on a scene: checked at the door, laid out and shared out to the kernels."""
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from collections.abc import Callable
+from typing import Any, NamedTuple
 
 import numpy as np
-from numpy.typing import ArrayLike
+from numpy.typing import ArrayLike, NDArray
 
 from coatings.optics.arrays import (
     Complexes,
@@ -20,16 +21,14 @@ from coatings.optics.arrays import (
 )
 from coatings.optics.kernel import first_bad
 from coatings.optics.scene import Scene
-
-KernelArguments = tuple[Reals, Integers, Reals, Reals, Reals, Reals, Reals, Reals, Reals]
+from coatings.optics.threads import share, worthwhile
 
 _NO_PLANE: Reals = np.empty((0, 0))
 _NO_LINE: Reals = np.empty(0)
 
 
-@dataclass(frozen=True, eq=False)
-class Batch:
-    """S stacks of L layers and what shifts their indices, ready for the kernels."""
+class Batch(NamedTuple):
+    """S stacks of L layers and what shifts their indices, as the kernels take them."""
 
     scene: Scene
     thickness: Reals
@@ -64,13 +63,8 @@ class Batch:
     @property
     def shape(self) -> tuple[int, int, int]:
         """S, P, L: stacks, points, layers."""
-        return self.thickness.shape[0], self.scene.points, self.thickness.shape[1]
-
-    @property
-    def cost_each(self) -> int:
-        """Layers times points of one stack, the bare facet counted as a layer."""
-        _, points, layers = self.shape
-        return (layers + 1) * points
+        stacks, layers = self.thickness.shape
+        return stacks, self.scene.points, layers
 
     @property
     def incident_index(self) -> Complexes:
@@ -81,27 +75,53 @@ class Batch:
         shifted: Complexes = incident + self.incident_shift[:, None]
         return shifted
 
-    def arguments(self, rows: slice) -> KernelArguments:
-        """What every kernel takes first, for the stacks in ``rows``."""
-        around = self.scene.kernel_arrays
-        return (
-            self.thickness[rows],
-            self.film[rows] if len(self.film) > 1 else self.film,
-            around["films"],
-            self.film_shift[rows],
-            around["media"],
-            self.incident_shift[rows],
-            around["q"],
-            around["tm"],
-            around["nm"],
-        )
+    def run(
+        self,
+        kernel: Callable[..., None],
+        *by_stack: NDArray[Any],
+        flags: tuple[bool, ...] = (),
+        effort: int = 1,
+    ) -> None:
+        """Call a kernel on all stacks, in threads when that is worth while.
+
+        ``by_stack`` are its arrays with an axis of stacks first; ``flags`` its last arguments;
+        ``effort`` its cost for a layer at a point, in forward passes.
+        """
+        scene_arrays = self.scene.kernel_arrays
+        stacks, points, layers = self.shape
+        cost_each = effort * points * (layers + 1)
+        if worthwhile(stacks, cost_each) < 2:
+            kernel(
+                self.thickness,
+                self.film,
+                *scene_arrays,
+                self.film_shift,
+                self.incident_shift,
+                *by_stack,
+                *flags,
+            )
+            return
+
+        def job(rows: slice) -> None:
+            kernel(
+                self.thickness[rows],
+                self.film[rows] if len(self.film) > 1 else self.film,
+                *scene_arrays,
+                self.film_shift[rows],
+                self.incident_shift[rows],
+                *(array[rows] for array in by_stack),
+                *flags,
+            )
+
+        share(stacks, cost_each, job)
 
 
 def _film(film: ArrayLike, shape: tuple[int, ...]) -> Integers:
-    axes = min(max(np.ndim(film), 1), 2)
+    axes = film.ndim if isinstance(film, np.ndarray) else np.ndim(film)
+    axes = min(max(axes, 1), 2)
     kinds = numbers(film, "film", np.int64, axes)
     check_shape(kinds, "film", shape[-axes:])
-    return kinds.reshape(-1, shape[-1]) if shape[-1] else kinds.reshape(1, 0)
+    return kinds if axes == 2 else kinds[None, :]
 
 
 def _check_layers(thickness: Reals, kinds: Integers, films: int) -> None:

@@ -20,6 +20,9 @@ EXACT = frozenset({"contract"})
 SUMS = frozenset({"contract", "reassoc"})
 """Sums may be taken in several strands: for plain totals only, where no order is better."""
 
+PEAKS = frozenset({"contract", "nnan", "nsz"})
+"""As EXACT where no nan can occur and +0 is as good as -0: for the largest of many."""
+
 
 def compiled(flags: frozenset[str] = EXACT) -> Callable[[_Kernel], _Kernel]:
     """Decorator: compile for this machine, free of the interpreter's lock, cached on disk."""

@@ -10,7 +10,6 @@ from coatings.optics.arrays import Complexes
 from coatings.optics.batch import Batch
 from coatings.optics.pointwise import differentiate
 from coatings.optics.spectrum import Response, respond_to
-from coatings.optics.threads import share
 
 
 @dataclass(frozen=True, eq=False)
@@ -31,11 +30,7 @@ def derivatives(batch: Batch, *, by_index: bool) -> Derivatives:
     stacks, points, layers = batch.shape
     dr, dt = np.empty((2, stacks, layers, points), np.complex128)
     edge = np.empty((stacks, 2, points), np.complex128)
-
-    def job(rows: slice) -> None:
-        differentiate(*batch.arguments(rows), by_index, dr[rows], dt[rows], edge[rows])
-
-    share(stacks, 10 * batch.cost_each, job)
+    batch.run(differentiate, dr, dt, edge, flags=(by_index,), effort=10)
     return Derivatives(
         respond_to(batch), dr.swapaxes(1, 2), dt.swapaxes(1, 2), (edge[:, 0], edge[:, 1])
     )

@@ -13,7 +13,6 @@ from coatings.optics.batch import Batch
 from coatings.optics.derivatives import Derivatives, derivatives
 from coatings.optics.scene import Scene
 from coatings.optics.slopes import climb
-from coatings.optics.threads import share
 
 Power = Literal["R", "T", "A"]
 Amplitude = Literal["r", "t"]
@@ -56,12 +55,7 @@ def weighted_gradient(
     check_shape(weights, "weight", (stacks, points))
     check_finite(weights, "weight")
     big_r, slope = np.empty((stacks, points)), np.zeros((stacks, layers))
-    unwanted = np.empty((stacks, layers, 0))
-
-    def job(rows: slice) -> None:
-        climb(*batch.arguments(rows), weights[rows], big_r[rows], slope[rows], unwanted[rows])
-
-    share(stacks, batch.cost_each, job)
+    batch.run(climb, weights, big_r, slope, np.empty((stacks, layers, 0)))
     return big_r, slope
 
 
@@ -199,10 +193,5 @@ def _reflectance_gradient(batch: Batch) -> tuple[Reals, Reals]:
     stacks, points, layers = batch.shape
     big_r, slope = np.empty((stacks, points)), np.empty((stacks, layers, points))
     unwanted = np.empty((stacks, 0))
-
-    def job(rows: slice) -> None:
-        none = unwanted[rows]
-        climb(*batch.arguments(rows), none, big_r[rows], none, slope[rows])
-
-    share(stacks, batch.cost_each, job)
+    batch.run(climb, unwanted, big_r, unwanted, slope)
     return big_r, slope.swapaxes(1, 2)

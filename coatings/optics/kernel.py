@@ -45,8 +45,15 @@ from typing import Any
 import numpy as np
 from numpy.typing import NDArray
 
-from coatings.optics.cache import SUMS, compiled
-from coatings.optics.elementary import power_of_e, sine_cosine, square_root
+from coatings.optics.cache import PEAKS, SUMS, compiled
+from coatings.optics.elementary import (
+    LITTLE,
+    one_less_little_power,
+    one_less_power,
+    power_of_e,
+    sine_cosine,
+    square_root,
+)
 
 U = np.uint64
 Floats = NDArray[np.float64]
@@ -57,6 +64,7 @@ Index = Any  # an unsigned 64-bit number inside compiled code
 ZERO, ONE, TWO = U(0), U(1), U(2)
 PLANE, P2, P3, P4, P5 = U(64), U(128), U(192), U(256), U(320)
 STATE, ROW = U(256), U(384)
+NM, Q_RE, Q_IM, TM = U(0), U(1), U(2), U(3)
 EVERY = U(16)
 PAD = U(7)
 LARGE = 1e100
@@ -72,21 +80,19 @@ def fill_row(
     index: Floats,
     shift_re: float,
     shift_im: float,
-    q: Floats,
-    tm: Floats,
-    nm: Floats,
+    points: Floats,
     p0: Index,
     n: Index,
     forward: float,
 ) -> None:
     """Fill a row for points p0 ... p0+n-1 of one medium; ``forward`` 1 takes the outgoing root."""
+    oblique = points.shape[0] > 1
     for i in range(n):
         p = p0 + i
         nr = index[TWO * p] + shift_re
         ni = index[TWO * p + ONE] + shift_im
-        if q.size > 0:
-            qr = q[TWO * p]
-            qi = q[TWO * p + ONE]
+        if oblique:
+            qr, qi = points[Q_RE, p], points[Q_IM, p]
             zr = (nr - qr) * (nr + qr) - (ni - qi) * (ni + qi)
             zi = (nr - qr) * (ni + qi) + (ni - qi) * (nr + qr)
             kr, ki = square_root(zr, zi)
@@ -99,16 +105,16 @@ def fill_row(
         ki = 0.0 if tiny else sign * ki
         size = SMALLEST_SQUARED if tiny else size
         er, ei = kr, ki
-        if q.size > 0:
+        if oblique:
             mr = nr * nr - ni * ni
             mi = 2.0 * nr * ni
             hr = (mr * kr + mi * ki) / size
             hi = (mi * kr - mr * ki) / size
-            er = hr if tm[p] > 0.5 else kr
-            ei = hi if tm[p] > 0.5 else ki
+            er = hr if points[TM, p] > 0.5 else kr
+            ei = hi if points[TM, p] > 0.5 else ki
         at = row + i
-        w[at] = kr / nm[p]
-        w[at + PLANE] = FOUR_PI * ki / nm[p]
+        w[at] = kr / points[NM, p]
+        w[at + PLANE] = FOUR_PI * ki / points[NM, p]
         w[at + P2] = er
         w[at + P3] = ei
         size = er * er + ei * ei
@@ -122,6 +128,15 @@ def total(w: Floats, at: Index, n: Index) -> float:
     result = 0.0
     for i in range(n):
         result += w[at + i]
+    return result
+
+
+@compiled(PEAKS)
+def largest(w: Floats, at: Index, n: Index) -> float:
+    """Largest number of a plane that holds none below zero."""
+    result = 0.0
+    for i in range(n):
+        result = max(result, w[at + i])
     return result
 
 
@@ -151,18 +166,22 @@ def cross_clear(w: Floats, src: Index, dst: Index, row: Index, d: float, n: Inde
 
 
 @compiled()
+def fade(w: Floats, row: Index, gone: Index, loss: Index, d: float, n: Index, little: bool) -> None:
+    """1 - exp(-2 Im delta) of a layer to plane ``gone``; 2 Im delta is added to ``loss``."""
+    for i in range(n):
+        u = w[row + PLANE + i] * d
+        w[loss + i] += u
+        w[gone + i] = one_less_little_power(u) if little else one_less_power(u)
+
+
+@compiled()
 def cross_lossy(
-    w: Floats, src: Index, dst: Index, row: Index, left: Index, loss: Index, d: float, n: Index
+    w: Floats, src: Index, dst: Index, row: Index, gone: Index, d: float, n: Index
 ) -> None:
-    """Carry a state through any layer; e goes to ``left``, 2 Im delta is added to ``loss``."""
+    """Carry a state through any layer whose plane ``gone`` `fade` has filled."""
     for i in range(n):
         s, c = sine_cosine(w[row + i] * d)
-        u = w[row + PLANE + i] * d
-        two, p = power_of_e(u)
-        gone = (1.0 - two) - two * p
-        w[left + i] = 1.0 - gone
-        w[loss + i] += u
-        h = 0.5 * gone
+        h = 0.5 * w[gone + i]
         g = 1.0 - h
         cos_r, cos_i = g * c, -h * s
         sin_r, sin_i = g * s, h * c
@@ -198,11 +217,11 @@ def sweep(
     w: Floats,
     thickness: Floats,
     film: Whole,
-    lossy: Flags,
+    lossy: Floats,
     shrunk: Flags,
     outside: Index,
     state: Index,
-    left: Index,
+    gone: Index,
     norm: Index,
     loss: Index,
     keep: bool,
@@ -210,8 +229,8 @@ def sweep(
 ) -> Index:
     """Carry the fields from outside to the chip; returns where the state at the chip lies.
 
-    ``keep`` stores the state at every interface (slot j: outer face of layer j-1) and e of every
-    lossy layer; else two slots serve in turn.
+    ``keep`` stores the state at every interface (slot j: outer face of layer j-1) and 1 - e of
+    every lossy layer; else two slots serve in turn.
     """
     layers = U(thickness.size)
     dst = state + STATE * (layers if keep else layers & ONE)
@@ -226,11 +245,13 @@ def sweep(
         src = dst
         dst = state + STATE * (layer if keep else layer & ONE)
         row = ROW * U(film[layer])
-        if lossy[film[layer]]:
-            at = left + PLANE * layer if keep else left
-            cross_lossy(w, src, dst, row, at, loss, thickness[layer], n)
+        d, steepest = thickness[layer], lossy[film[layer]]
+        if steepest > 0.0:
+            at = gone + PLANE * layer if keep else gone
+            fade(w, row, at, loss, d, n, steepest * d < LITTLE)
+            cross_lossy(w, src, dst, row, at, d, n)
         else:
-            cross_clear(w, src, dst, row, thickness[layer], n)
+            cross_clear(w, src, dst, row, d, n)
         count = step + ONE
         if count % EVERY == ZERO:
             event = count // EVERY
@@ -261,22 +282,20 @@ def reflect(w: Floats, at: Index, incident: Index, out: Index, n: Index) -> None
 @compiled()
 def fill_films(
     w: Floats,
-    lossy: Flags,
-    films: Floats,
+    lossy: Floats,
+    around: Floats,
     shifts: Floats,
     stack: Index,
-    q: Floats,
-    tm: Floats,
-    nm: Floats,
+    points: Floats,
     p0: Index,
     n: Index,
 ) -> None:
-    """Fill the rows of all films and note which of them call for complex arithmetic."""
-    for m in range(U(films.shape[0])):
+    """Fill the rows of all films; note the largest 2 Im kz of each, zero for real arithmetic."""
+    for m in range(U(lossy.size)):
         by_re = shifts[stack, TWO * m] if shifts.size > 0 else 0.0
         by_im = shifts[stack, TWO * m + ONE] if shifts.size > 0 else 0.0
-        fill_row(w, ROW * m, films[m], by_re, by_im, q, tm, nm, p0, n, 0.0)
-        lossy[m] = total(w, ROW * m + PLANE, n) != 0.0
+        fill_row(w, ROW * m, around[m], by_re, by_im, points, p0, n, 0.0)
+        lossy[m] = largest(w, ROW * m + PLANE, n)
 
 
 @compiled()
@@ -315,13 +334,10 @@ def emit(
 def respond(
     thickness: Floats,
     film: Whole,
-    films: Floats,
+    around: Floats,
+    points: Floats,
     film_shift: Floats,
-    media: Floats,
     incident_shift: Floats,
-    q: Floats,
-    tm: Floats,
-    nm: Floats,
     r: Floats,
     t: Floats,
     big_t: Floats,
@@ -329,31 +345,32 @@ def respond(
 ) -> None:
     """r, t with T, and R of S stacks at P points; an output without columns is not wanted.
 
-    thickness (S, L) [nm]; film (1 or S, L); films (M, 2P); film_shift (0 or S, 2M);
-    media (2, 2P): incident, outside; incident_shift (0 or S); q (0 or 2P); tm (0 or P); nm (P);
+    thickness (S, L) [nm]; film (1 or S, L); around (M + 2, 2P): index of the films, of the
+    incident side, of the outside; points (1 or 4, P): wavelength [nm] and, if not all is at normal
+    incidence, Re q, Im q, 1 for TM; film_shift (0 or S, 2M); incident_shift (0 or S);
     r, t (S, 2P); big_t, big_r (S, P).
     """
-    stacks, rows, points = U(thickness.shape[0]), U(films.shape[0]), U(nm.size)
+    stacks, rows, columns = U(thickness.shape[0]), U(around.shape[0]) - TWO, U(points.shape[1])
     events = U(thickness.shape[1]) // EVERY + ONE
     incident, outside = ROW * rows, ROW * (rows + ONE)
     loss = ROW * (rows + TWO)
-    left, norm, out, state = loss + PLANE, loss + P2, loss + P3, loss + P3 + STATE
+    gone, norm, out, state = loss + PLANE, loss + P2, loss + P3, loss + P3 + STATE
     w = np.zeros(state + TWO * STATE)
-    lossy = np.empty(rows, np.bool_)
+    lossy = np.empty(rows)
     shrunk = np.empty(events, np.bool_)
-    for p0 in range(ZERO, points, PLANE):
-        n = min(PLANE, points - p0)
+    for p0 in range(ZERO, columns, PLANE):
+        n = min(PLANE, columns - p0)
         full = (n + PAD) & ~PAD
-        fill_row(w, outside, media[1], 0.0, 0.0, q, tm, nm, p0, n, 1.0)
+        fill_row(w, outside, around[rows + ONE], 0.0, 0.0, points, p0, n, 1.0)
         for s in range(stacks):
             if s == ZERO or film_shift.size > 0:
-                fill_films(w, lossy, films, film_shift, s, q, tm, nm, p0, n)
+                fill_films(w, lossy, around, film_shift, s, points, p0, n)
             if s == ZERO or incident_shift.size > 0:
                 by = incident_shift[s] if incident_shift.size > 0 else 0.0
-                fill_row(w, incident, media[0], by, 0.0, q, tm, nm, p0, n, 1.0)
+                fill_row(w, incident, around[rows], by, 0.0, points, p0, n, 1.0)
             kinds = film[s if film.shape[0] > 1 else ZERO]
             at = sweep(
-                w, thickness[s], kinds, lossy, shrunk, outside, state, left, norm, loss, False, full
+                w, thickness[s], kinds, lossy, shrunk, outside, state, gone, norm, loss, False, full
             )
             reflect(w, at, incident, out, full)
             emit(w, incident, outside, out, loss, r[s], t[s], big_t[s], big_r[s], p0, n)

@@ -26,15 +26,17 @@ import numpy as np
 from numpy.typing import NDArray
 
 from coatings.optics.cache import compiled
-from coatings.optics.elementary import power_of_e, sine_cosine
+from coatings.optics.elementary import one_less_power, sine_cosine
 from coatings.optics.kernel import (
     LARGE,
+    NM,
     ONE,
     P2,
     P4,
     PLANE,
     ROW,
     SHRINK,
+    TM,
     TWO,
     TWO_PI,
     ZERO,
@@ -66,8 +68,7 @@ def vertical(w: Floats, at: Index) -> complex:
 def turn(w: Floats, at: Index, d: float) -> tuple[complex, complex, float]:
     """cos and sin of delta, exp(-Im delta) left out, and exp(-2 Im delta)."""
     s, c = sine_cosine(float(w[at] * d))
-    two, p = power_of_e(float(w[at + PLANE] * d))
-    gone = (1.0 - two) - two * p
+    gone = one_less_power(float(w[at + PLANE] * d))
     h = 0.5 * gone
     g = 1.0 - h
     return complex(g * c, -h * s), complex(g * s, h * c), 1.0 - gone
@@ -181,42 +182,39 @@ def outward(
 def differentiate(
     thickness: Floats,
     film: Whole,
-    films: Floats,
+    around: Floats,
+    points: Floats,
     film_shift: Floats,
-    media: Floats,
     incident_shift: Floats,
-    q: Floats,
-    tm: Floats,
-    nm: Floats,
-    by_index: bool,
     dr: Complexes,
     dt: Complexes,
     edge: Complexes,
+    by_index: bool,
 ) -> None:
     """dr/dx and d ln t/dx, x the thickness [nm] or the index of each layer.
 
     First arguments as for `kernel.respond`; dr, dt (S, L, P); edge (S, 2, P): dr by the incident
     and by the outside admittance.
     """
-    layers, rows, points = thickness.shape[1], U(films.shape[0]), U(nm.size)
+    layers, rows, columns = thickness.shape[1], U(around.shape[0]) - TWO, U(points.shape[1])
     incident, outside = ROW * rows, ROW * (rows + ONE)
     w = np.zeros(ROW * (rows + TWO))
-    lossy = np.empty(rows, np.bool_)
+    lossy = np.empty(rows)
     index = np.empty(rows, np.complex128)
     b, c = np.empty(layers + 1, np.complex128), np.empty(layers + 1, np.complex128)
     cos, sin = np.empty(layers, np.complex128), np.empty(layers, np.complex128)
     left, norm = np.empty(layers), np.empty(layers)
-    for p in range(points):
-        fill_row(w, outside, media[1], 0.0, 0.0, q, tm, nm, p, ONE, 1.0)
+    for p in range(columns):
+        fill_row(w, outside, around[rows + ONE], 0.0, 0.0, points, p, ONE, 1.0)
         eta_out = pair(w, outside + P2)
-        oblique_tm = tm.size > 0 and tm[p] > 0.5
+        tm = points.shape[0] > 1 and points[TM, p] > 0.5
         for s in range(U(thickness.shape[0])):
-            fill_films(w, lossy, films, film_shift, s, q, tm, nm, p, ONE)
+            fill_films(w, lossy, around, film_shift, s, points, p, ONE)
             by = incident_shift[s] if incident_shift.size > 0 else 0.0
-            fill_row(w, incident, media[0], by, 0.0, q, tm, nm, p, ONE, 1.0)
+            fill_row(w, incident, around[rows], by, 0.0, points, p, ONE, 1.0)
             eta_in = pair(w, incident + P2)
             for m in range(rows):
-                index[m] = complex(films[m, TWO * p], films[m, TWO * p + ONE])
+                index[m] = complex(around[m, TWO * p], around[m, TWO * p + ONE])
                 if film_shift.size > 0:
                     index[m] += complex(film_shift[s, TWO * m], film_shift[s, TWO * m + ONE])
             kinds = film[s if film.shape[0] > 1 else ZERO]
@@ -227,8 +225,8 @@ def differentiate(
                 d,
                 kinds,
                 index,
-                TWO_PI / nm[p],
-                oblique_tm,
+                TWO_PI / points[NM, p],
+                tm,
                 eta_in,
                 by_index,
                 b,

@@ -55,7 +55,7 @@ class Scene:
     films: Complexes
     q: Complexes | None = None
     tm: NDArray[np.bool_] | bool = False
-    kernel_arrays: dict[str, Reals] = field(init=False, repr=False)
+    kernel_arrays: tuple[Reals, Reals] = field(init=False, repr=False)
 
     def __post_init__(self) -> None:
         nm = np.array(numbers(self.wavelength_nm, "wavelength_nm", np.float64, 1))
@@ -67,18 +67,13 @@ class Scene:
         _check_index(films, "films")
         q = None if self.q is None else _per_point(self.q, "q", nm.size, is_index=False)
         tm = _polarizations(self.tm, nm.size)
-        kernel_arrays = {
-            "films": parts(films),
-            "media": parts(np.stack([incident, outside])),
-            "q": np.empty(0) if q is None else parts(q),
-            "tm": np.empty(0) if q is None else tm.astype(np.float64),
-            "nm": nm.view(),
-        }
+        around = parts(np.vstack([films, incident, outside]))
+        rows = [nm] if q is None else [nm, q.real, q.imag, tm]
         for array in (nm, incident, outside, films, q, tm):
             if array is not None:
                 array.setflags(write=False)
         self._set(wavelength_nm=nm, incident=incident, outside=outside, films=films, q=q, tm=tm)
-        self._set(kernel_arrays=kernel_arrays)
+        self._set(kernel_arrays=(around, np.array(rows, np.float64)))
 
     def _set(self, **values: Any) -> None:
         for name, value in values.items():

@@ -50,11 +50,19 @@ def start_slope(w: Floats, incident: Index, out: Index, alpha: Index, n: Index) 
 
 
 @compiled()
-def fade_slope(w: Floats, alpha: Index, factor: Index, n: Index) -> None:
+def scale_slope(w: Floats, alpha: Index, factor: Index, n: Index) -> None:
     """Multiply alpha by a real plane."""
     for i in range(n):
         w[alpha + i] *= w[factor + i]
         w[alpha + PLANE + i] *= w[factor + i]
+
+
+@compiled()
+def fade_slope(w: Floats, alpha: Index, gone: Index, n: Index) -> None:
+    """Multiply alpha by 1 - ``gone``."""
+    for i in range(n):
+        w[alpha + i] *= 1.0 - w[gone + i]
+        w[alpha + PLANE + i] *= 1.0 - w[gone + i]
 
 
 @compiled()
@@ -100,10 +108,10 @@ def weigh(w: Floats, alpha: Index, weight: Floats, p0: Index, n: Index) -> None:
 def emit_slopes(
     w: Floats,
     film: Whole,
-    lossy: Flags,
+    lossy: Floats,
     shrunk: Flags,
     state: Index,
-    left: Index,
+    gone: Index,
     norm: Index,
     alpha: Index,
     slope: Index,
@@ -118,11 +126,11 @@ def emit_slopes(
     for layer in range(layers):
         count = layers - layer
         if count % EVERY == ZERO and shrunk[count // EVERY]:
-            fade_slope(w, alpha, norm + PLANE * (count // EVERY), full)
+            scale_slope(w, alpha, norm + PLANE * (count // EVERY), full)
         at = state + STATE * (layer + ONE)
         row = ROW * U(film[layer])
-        if lossy[film[layer]]:
-            fade_slope(w, alpha, left + PLANE * layer, full)
+        if lossy[film[layer]] > 0.0:
+            fade_slope(w, alpha, gone + PLANE * layer, full)
             slope_lossy(w, at, row, alpha, slope, full)
         else:
             slope_clear(w, at, row, alpha, slope, full)
@@ -136,13 +144,10 @@ def emit_slopes(
 def climb(
     thickness: Floats,
     film: Whole,
-    films: Floats,
+    around: Floats,
+    points: Floats,
     film_shift: Floats,
-    media: Floats,
     incident_shift: Floats,
-    q: Floats,
-    tm: Floats,
-    nm: Floats,
     weight: Floats,
     big_r: Floats,
     weighted: Floats,
@@ -153,32 +158,32 @@ def climb(
     First arguments as for `kernel.respond`. weight (S, P) or (S, 0) for ones; ``weighted`` comes
     zeroed; of weighted (S, L) and each (S, L, P) one may have no elements: it is not wanted.
     """
-    stacks, rows, points = U(thickness.shape[0]), U(films.shape[0]), U(nm.size)
+    stacks, rows, columns = U(thickness.shape[0]), U(around.shape[0]) - TWO, U(points.shape[1])
     layers = U(thickness.shape[1])
     events = layers // EVERY + ONE
     incident, outside = ROW * rows, ROW * (rows + ONE)
     loss = ROW * (rows + TWO)
     slope, out = loss + PLANE, loss + P2
     alpha = out + STATE
-    left = alpha + P2
-    norm = left + PLANE * layers
+    gone = alpha + P2
+    norm = gone + PLANE * layers
     state = norm + PLANE * events
     w = np.zeros(state + STATE * (layers + ONE))
-    lossy = np.empty(rows, np.bool_)
+    lossy = np.empty(rows)
     shrunk = np.empty(events, np.bool_)
-    for p0 in range(ZERO, points, PLANE):
-        n = min(PLANE, points - p0)
+    for p0 in range(ZERO, columns, PLANE):
+        n = min(PLANE, columns - p0)
         full = (n + PAD) & ~PAD
-        fill_row(w, outside, media[1], 0.0, 0.0, q, tm, nm, p0, n, 1.0)
+        fill_row(w, outside, around[rows + ONE], 0.0, 0.0, points, p0, n, 1.0)
         for s in range(stacks):
             if s == ZERO or film_shift.size > 0:
-                fill_films(w, lossy, films, film_shift, s, q, tm, nm, p0, n)
+                fill_films(w, lossy, around, film_shift, s, points, p0, n)
             if s == ZERO or incident_shift.size > 0:
                 by = incident_shift[s] if incident_shift.size > 0 else 0.0
-                fill_row(w, incident, media[0], by, 0.0, q, tm, nm, p0, n, 1.0)
+                fill_row(w, incident, around[rows], by, 0.0, points, p0, n, 1.0)
             kinds = film[s if film.shape[0] > 1 else ZERO]
             at = sweep(
-                w, thickness[s], kinds, lossy, shrunk, outside, state, left, norm, loss, True, full
+                w, thickness[s], kinds, lossy, shrunk, outside, state, gone, norm, loss, True, full
             )
             reflect(w, at, incident, out, full)
             for i in range(n):
@@ -192,7 +197,7 @@ def climb(
                 lossy,
                 shrunk,
                 state,
-                left,
+                gone,
                 norm,
                 alpha,
                 slope,

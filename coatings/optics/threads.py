@@ -63,9 +63,14 @@ def get_threads() -> int:
     return _crew.size
 
 
+def worthwhile(outer: int, cost_each: int) -> int:
+    """Into how many parts a batch is worth being shared; 0 or 1 means not at all."""
+    return min(_crew.size, outer, outer * cost_each // WORTHWHILE)
+
+
 def share(outer: int, cost_each: int, job: Callable[[slice], None]) -> None:
     """Call ``job`` on slices that cover ``range(outer)``, in threads when that is worth while."""
-    parts = min(_crew.size, outer, outer * cost_each // WORTHWHILE)
+    parts = worthwhile(outer, cost_each)
     if parts < 2:
         job(slice(0, outer))
         return

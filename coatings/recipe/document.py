@@ -8,7 +8,7 @@ from coatings.recipe.feedback import Amplifier, External
 from coatings.recipe.laser import Laser
 from coatings.recipe.material_section import MaterialSection
 from coatings.recipe.process import ProcessTable
-from coatings.recipe.section import Name, Section, entry, number
+from coatings.recipe.section import PRINTABLE, Name, Section, entry, number
 from coatings.recipe.witness import Witness
 
 FORMAT_VERSION = 1
@@ -19,9 +19,21 @@ class RecipeTable(Section):
 
     recipe: int = number("Format version of the recipe", "1", ge=1, le=1)
     title: str = entry(
-        "What the product is called", default="", otherwise="the file's name", max_length=200
+        "What the product is called",
+        default="",
+        expects="one line of at most 200 characters",
+        otherwise="the file's name",
+        max_length=200,
+        pattern=PRINTABLE,
     )
-    revision: str = entry("Revision of the recipe", default="", otherwise="none", max_length=40)
+    revision: str = entry(
+        "Revision of the recipe",
+        default="",
+        expects="one line of at most 40 characters",
+        otherwise="none",
+        max_length=40,
+        pattern=PRINTABLE,
+    )
     chip: Chip = entry("The laser chip as its facets see it")
     laser: Laser | None = entry(
         "From mirror loss to threshold and power",

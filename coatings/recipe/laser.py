@@ -158,9 +158,9 @@ def laser_conflicts(laser: Laser, at: KeyPath) -> Iterator[Found]:
     if laser.gain_width_nm is not None and laser.gain_peak_nm is None:
         yield at / "gain_peak_nm", "is missing; gain_width_nm needs it"
     if laser.junction_V is None:
-        for key in ("thermal_K_per_W", "series_mohm"):
-            if getattr(laser, key) > 0.0:
-                yield at / "junction_V", f"is missing; {key} needs it"
+        given = [key for key in ("thermal_K_per_W", "series_mohm") if getattr(laser, key) > 0.0]
+        if given:
+            yield at / "junction_V", f"is missing; needed by {' and '.join(given)}"
 
 
 def laser_on_chip_conflicts(laser: Laser, chip: Chip, at: KeyPath) -> Iterator[Found]:

@@ -79,7 +79,7 @@ def _parse(text: str, *, path: Path, sha256: str) -> Recipe:
         raise RecipeError(Problem(str(path), str(fault))) from None
     version = raw.get("recipe")
     if is_number(version) and version != FORMAT_VERSION:
-        what = f"is {shown(version)}; this program reads format version {FORMAT_VERSION}"
+        what = f"is {shown(version)}; this program reads recipes of format version {FORMAT_VERSION}"
         raise RecipeError(Problem(f"{path}: recipe", what))
     found, table, sections = _validate(raw)
     blamed = [where for where, _ in found]

@@ -108,6 +108,7 @@ def references(sections: Sections) -> Iterator[Reference]:
 def material_problems(sections: Sections, shelf: Shelf) -> Iterator[Found]:
     """Unknown materials, own data that can't be used, and wavelengths that data do not reach."""
     yield from shelf.problems()
+    seen: set[tuple[KeyPath, str]] = set()
     for reference in references(sections):
         try:
             material = shelf.material(reference.name)
@@ -116,7 +117,10 @@ def material_problems(sections: Sections, shelf: Shelf) -> Iterator[Found]:
             if not shelf.is_own(reference.name):
                 yield reference.path, error.problems[0].what
             continue
-        yield from _unreached(material, reference)
+        for path, what in _unreached(material, reference):
+            if (path, reference.name) not in seen:
+                yield path, what
+            seen.add((path, reference.name))
         own = shelf.sections.get(reference.name)
         if own is not None and own.cauchy is not None:
             yield from _impossible_formula(material, reference)
@@ -128,8 +132,8 @@ def _unreached(material: Material, reference: Reference) -> Iterator[Found]:
         if first < low or last > high:
             yield (
                 path,
-                f"reaches over {_span(first, last)}, but {reference.name} "
-                f"({reference.path}) is known over {_span(low, high)}",
+                f"{_asked(first, last)}, but {reference.name} ({reference.path}) is known "
+                f"over {low:g} to {high:g} nm",
             )
 
 
@@ -143,13 +147,13 @@ def _impossible_formula(material: Material, reference: Reference) -> Iterator[Fo
         if material.nk(used_nm).real.min() <= 0.0:
             yield (
                 _TOP / "materials" / reference.name / "cauchy",
-                f"gives an index of 0 or less inside {_span(first, last)}; "
+                f"gives an index of 0 or less within {first:g} to {last:g} nm; "
                 "check the coefficients (wavelengths are in um)",
             )
 
 
-def _span(first: float, last: float) -> str:
-    return f"{first:g} nm" if first == last else f"{first:g} to {last:g} nm"
+def _asked(first: float, last: float) -> str:
+    return f"is {first:g}" if first == last else f"reaches over {first:g} to {last:g} nm"
 
 
 def _chip_references(chip: Chip, sections: Sections) -> Iterator[Reference]:

@@ -10,7 +10,7 @@ from numpy.typing import ArrayLike, NDArray
 
 from coatings.errors import InputError, Problem, RecipeError
 from coatings.recipe.chip import Chip
-from coatings.recipe.facet import Facet
+from coatings.recipe.facet import Facet, FacetName
 from coatings.recipe.feedback import Amplifier, External
 from coatings.recipe.laser import Laser
 from coatings.recipe.own_materials import Shelf
@@ -46,7 +46,7 @@ class Recipe:
     shelf: Shelf = field(repr=False)
 
     @property
-    def facets(self) -> dict[str, Facet]:
+    def facets(self) -> dict[FacetName, Facet]:
         """Both facets by name."""
         return {"front": self.front, "rear": self.rear}
 
@@ -68,7 +68,7 @@ class Recipe:
         InputError
             for a facet that is neither "front" nor "rear"
         """
-        own = self.facets.get(facet)
+        own = {"front": self.front, "rear": self.rear}.get(facet)
         if own is None:
             raise InputError(f"there is no facet {facet!r}; expected front or rear")
         return process_errors(self.process_table, own.table.process, films=own.films)

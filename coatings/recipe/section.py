@@ -101,7 +101,9 @@ def _pair_or_by_material(value: object) -> str | None:
     return BY_MATERIAL_TAG if isinstance(value, dict) else None
 
 
-Name = Annotated[str, Field(min_length=1, max_length=80)]
+# Letters, marks, digits, punctuation, symbols, blanks: nothing that moves a terminal's cursor.
+PRINTABLE = r"^[\p{L}\p{M}\p{N}\p{P}\p{S} ]*$"
+Name = Annotated[str, Field(min_length=1, max_length=80, pattern=PRINTABLE)]
 Wavelength = Annotated[float, Field(gt=0.0, le=1e6)]
 Band = tuple[Wavelength, Wavelength]
 Fraction = Annotated[float, Field(ge=0.0, le=1.0)]

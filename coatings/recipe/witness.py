@@ -14,10 +14,10 @@ class Witness(Section):
 
     name: str = entry(
         "Name of the piece, as used on the command line",
-        expects="a name of 1 to 40 characters without '=' or '/'",
+        expects="a name of 1 to 40 characters without =, / and backslash",
         min_length=1,
         max_length=40,
-        pattern=r"^[^=/\x00-\x1f]+$",
+        pattern=r"^[\p{L}\p{M}\p{N}\p{P}\p{S} --[=/\\]]+$",
     )
     facet: Literal["front", "rear"] = entry("Facet whose coating run the piece went through")
     substrate: Name = entry(

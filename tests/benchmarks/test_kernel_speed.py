@@ -16,7 +16,7 @@ from coatings.optics import (
     get_threads,
     gradient,
     reflectance,
-    response,
+    reflection,
     set_threads,
     weighted_gradient,
 )
@@ -40,8 +40,8 @@ class Work:
     def plain(self):
         return self.nm, INCIDENT, OUTSIDE, self.films, self.thickness, self.film
 
-    def response(self):
-        return response(self.scene, self.thickness, film=self.film).r
+    def reflection(self):
+        return reflection(self.scene, self.thickness, film=self.film)
 
     def reflectance(self):
         return reflectance(self.scene, self.thickness, film=self.film)
@@ -75,7 +75,7 @@ def times(*jobs, seconds=1.5):
 
 def exponent(sizes, make):
     """Slope of log time against log size."""
-    taken = [times(make(size).response, seconds=0.4)[0] for size in sizes]
+    taken = [times(make(size).reflection, seconds=0.4)[0] for size in sizes]
     return np.polyfit(np.log(sizes), np.log(taken), 1)[0]
 
 
@@ -99,11 +99,11 @@ def table(benchmark, capsys):
 @pytest.mark.parametrize("shape", [(3, 10, 100), (50, 4, 60)])
 def test_rivals_agree(shape, tmp_path):
     work = Work(*shape)
-    np.testing.assert_allclose(numpy_in_pieces(*work.plain), work.response(), atol=1e-12)
+    np.testing.assert_allclose(numpy_in_pieces(*work.plain), work.reflection(), atol=1e-12)
     in_c = c_reflection(tmp_path)
     if in_c is None:
         pytest.skip("no C compiler here")
-    np.testing.assert_allclose(in_c(*work.plain), work.response(), atol=1e-12)
+    np.testing.assert_allclose(in_c(*work.plain), work.reflection(), atol=1e-12)
 
 
 def test_against_numpy(table, benchmark):
@@ -112,18 +112,18 @@ def test_against_numpy(table, benchmark):
         whole, pieces, ours = times(
             lambda work=work: numpy_reflection(*work.plain),
             lambda work=work: numpy_in_pieces(*work.plain),
-            work.response,
+            work.reflection,
         )
         name = "numpy / kernel, {} stacks x {} layers x {} wavelengths".format(*shape)
         table.append((name, min(whole, pieces) / ours, ">=", wanted))
-    benchmark(work.response)
+    benchmark(work.reflection)
 
 
 def test_against_complex_path(table, benchmark):
     complex_path, real_path = Work(2000, 10, 100), Work(2000, 10, 100, k=0.0)
-    slow, fast = times(complex_path.response, real_path.response)
+    slow, fast = times(complex_path.reflection, real_path.reflection)
     table.append(("lossy / lossless layers, complex r", slow / fast, ">=", 1.3))
-    benchmark(real_path.response)
+    benchmark(real_path.reflection)
 
 
 def test_gradients(table, benchmark):
@@ -158,7 +158,7 @@ def test_growth(table, benchmark):
     by_points = exponent([50, 100, 300, 1000, 5000], lambda n: Work(50, 10, n))
     table.append(("exponent of time in layers, 5 to 300", by_layers, "<=", 1.05))
     table.append(("exponent of time in wavelengths, 50 to 5000", by_points, "<=", 1.05))
-    benchmark(Work(50, 10, 100).response)
+    benchmark(Work(50, 10, 100).reflection)
 
 
 def test_against_c(table, benchmark, tmp_path):
@@ -166,6 +166,6 @@ def test_against_c(table, benchmark, tmp_path):
     if in_c is None:
         pytest.skip("no C compiler here")
     work = Work(2000, 10, 100)
-    theirs, ours = times(lambda: in_c(*work.plain), work.response)
+    theirs, ours = times(lambda: in_c(*work.plain), work.reflection)
     table.append(("kernel / C (gcc -O3 -march=native -ffast-math)", ours / theirs, "<=", 1.6))
-    benchmark(work.response)
+    benchmark(work.reflection)

@@ -77,7 +77,7 @@ CONTRADICTIONS = {
     ),
     "heat without voltage": (
         document(laser(junction_V=None, thermal_K_per_W="2.0")),
-        r"^laser\.junction_V: is missing; thermal_K_per_W needs it$",
+        r"^laser\.junction_V: is missing; needed by thermal_K_per_W$",
     ),
     "load without height": (
         document(laser(facet_limit_MW_per_cm2="20.0")),

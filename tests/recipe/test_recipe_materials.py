@@ -81,6 +81,13 @@ def test_band_outside_the_chip_material_s_range() -> None:
     )
 
 
+def test_material_used_twice_is_blamed_once() -> None:
+    text = document(front(cap='[{ material = "Ta2O5", nm = 1 }]'), band_nm="[964, 1900]")
+    assert [line.split("(")[1][:13] for line in problems(text)] == ["front.palette"]
+    lines = problems(document(front(), wavelength_nm="200", band_nm="[964, 988]"))
+    assert "chip.wavelength_nm: is 200, but Ta2O5 (front.palette) is known over" in lines[-1]
+
+
 def test_own_material_goes_before_the_library() -> None:
     recipe = read(front(), own("index = 2.5\nk = 0.01", "Ta2O5"))
     assert recipe.material("Ta2O5").nk(976.0) == 2.5 + 0.01j
@@ -235,7 +242,7 @@ CHAINS = {
     ),
     "formula of zero": (
         own("cauchy = [0.5, -0.6]"),
-        r"^materials\.own\.cauchy: gives an index of 0 or less inside 964 to 988 nm; check the coe",
+        r"^materials\.own\.cauchy: gives an index of 0 or less within 964 to 988 nm; check",
     ),
     "formula below zero": (own("cauchy = [-2.0]"), r"^materials\.own\.cauchy: "),
 }

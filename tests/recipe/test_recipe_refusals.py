@@ -13,7 +13,7 @@ from coatings.recipe import parse_recipe
 
 REFUSED = {
     # format version, top level
-    "version": ("recipe = 2", r"^recipe: is 2; this program reads format version 1$"),
+    "version": ("recipe = 2", r"^recipe: is 2; this program reads recipes of format version 1$"),
     "version of text": (
         document().replace("recipe = 1", 'recipe = "1"'),
         r'^recipe: is "1"; expected 1$',
@@ -27,6 +27,14 @@ REFUSED = {
     "typo in a section": (document("[frnt]"), r"^frnt: unknown key; did you mean front\?$"),
     "nothing like it": (document("[qqqqqq]"), r"^qqqqqq: unknown key; expected one of recipe, "),
     "odd key": (document('["a\\nb"]'), r'^"a\\nb": unknown key; '),
+    "title of two lines": (
+        document().replace("recipe = 1", 'recipe = 1\ntitle = "a\\u001b[2J"'),
+        r'^title: is "a\\u001b\[2J"; expected one line of at most 200 characters$',
+    ),
+    "name that moves the cursor": (
+        document(front(palette='["Al2O3", "a\\nb"]')),
+        r'^front\.palette: is \["Al2O3", "a\\nb"\]; expected a list of materials',
+    ),
     # chip
     "typo in a key": (
         document(lenght_um="1.0"),
