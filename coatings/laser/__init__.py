@@ -6,6 +6,7 @@ from coatings.laser.axial import (
     axial_profile,
     front_over_least,
 )
+from coatings.laser.budget import PowerBudget, power_budget
 from coatings.laser.chip import Gain, GainLaw, LaserChip
 from coatings.laser.estimate import LaserEstimate, estimate
 from coatings.laser.external import External, FedBackFacet, with_external
@@ -63,6 +64,7 @@ __all__ = [
     "LaserEstimate",
     "Limits",
     "Operation",
+    "PowerBudget",
     "PowerCurrent",
     "R_product_needed",
     "Ripple",
@@ -85,6 +87,7 @@ __all__ = [
     "mirror_loss_per_cm",
     "mode_spacing_GHz",
     "operate",
+    "power_budget",
     "power_current",
     "reflected_gain",
     "ripple_dB",

@@ -3,6 +3,9 @@
 Compiled code lies beside the source, or in the user's cache folder when the source's folder is
 read-only. Where neither can be written the kernel is compiled anew in every process: slower to
 start, equal in every other way, and without a word.
+
+The compiler looks at the date of a kernel's own file only. Whoever edits a function that kernels in
+another file call (`elementary`, `kernel`) deletes the .nbi files in this folder's __pycache__.
 """
 
 from __future__ import annotations

@@ -65,6 +65,12 @@ def vertical(w: Floats, at: Index) -> complex:
 
 
 @compiled()
+def span(z: complex) -> float:
+    """A size of z without a root."""
+    return abs(z.real) + abs(z.imag)
+
+
+@compiled()
 def turn(w: Floats, at: Index, d: float) -> tuple[complex, complex, float]:
     """cos and sin of delta, exp(-Im delta) left out, and exp(-2 Im delta)."""
     s, c = sine_cosine(float(w[at] * d))
@@ -126,7 +132,7 @@ def inward(
         x, y = b[layer + 1], c[layer + 1]
         nb = cos[layer] * x - 1j * sin[layer] * inverse * y
         nc = cos[layer] * y - 1j * sin[layer] * eta * x
-        scale = SHRINK if abs(nb) + abs(nc) > LARGE else 1.0
+        scale = SHRINK if span(nb) + span(nc) > LARGE else 1.0
         b[layer], c[layer], norm[layer] = scale * nb, scale * nc, scale * scale
 
 
@@ -173,7 +179,7 @@ def outward(
             start *= left[layer]
             dr[layer, p] = -1j * kz * start * (inverse * y * y - eta * x * x)
             dt[layer, p] = 1j * kz * (v1 * inverse * y + v2 * eta * x) / (v1 * x + v2 * y)
-        scale = SHRINK if abs(v1) + abs(v2) > LARGE else 1.0
+        scale = SHRINK if span(v1) + span(v2) > LARGE else 1.0
         w1, w2 = scale * v1, scale * v2
     return complex(-start * b[d.size])
 
@@ -209,14 +215,15 @@ def differentiate(
         eta_out = pair(w, outside + P2)
         tm = points.shape[0] > 1 and points[TM, p] > 0.5
         for s in range(U(thickness.shape[0])):
-            fill_films(w, lossy, around, film_shift, s, points, p, ONE)
+            if s == ZERO or film_shift.size > 0:
+                fill_films(w, lossy, around, film_shift, s, points, p, ONE)
+                for m in range(rows):
+                    index[m] = complex(around[m, TWO * p], around[m, TWO * p + ONE])
+                    if film_shift.size > 0:
+                        index[m] += complex(film_shift[s, TWO * m], film_shift[s, TWO * m + ONE])
             by = incident_shift[s] if incident_shift.size > 0 else 0.0
             fill_row(w, incident, around[rows], by, 0.0, points, p, ONE, 1.0)
             eta_in = pair(w, incident + P2)
-            for m in range(rows):
-                index[m] = complex(around[m, TWO * p], around[m, TWO * p + ONE])
-                if film_shift.size > 0:
-                    index[m] += complex(film_shift[s, TWO * m], film_shift[s, TWO * m + ONE])
             kinds = film[s if film.shape[0] > 1 else ZERO]
             d = thickness[s]
             inward(w, d, kinds, eta_out, b, c, cos, sin, left, norm)

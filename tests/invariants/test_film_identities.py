@@ -117,7 +117,8 @@ def test_no_tm_light_returns_at_the_brewster_angle(chip, outside):
 @quick
 @given(chip=st.floats(1.5, 4.0), part=st.floats(0.01, 0.99), tm=polarizations)
 def test_phase_at_total_reflection(chip, part, tm):
-    """tan(phase/2) = -sqrt(q^2 - n2^2)/kz1 for TE; for TM, E tangential, kz1 n2^2 / (n1^2 ...)."""
+    """r = (eta_1 - i |eta_2|)/(eta_1 + i |eta_2|), so tan(phase/2) = -|eta_2|/eta_1 for TE. For TM
+    eta_2 = -i n2^2/decay, the sign turns and the ratio is n2^2 kz1/(n1^2 decay), n2 = 1 here."""
     q = 1.0 + part * (chip - 1.0)
     inside, decay = np.sqrt(chip**2 - q**2), np.sqrt(q**2 - 1.0)
     found = _light(chip, 1.0, [1.5], [0.0], q=q, tm=tm)

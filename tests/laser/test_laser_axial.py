@@ -6,6 +6,8 @@ from dataclasses import replace
 
 import numpy as np
 import pytest
+from hypothesis import given
+from hypothesis import strategies as st
 from scipy.constants import c, elementary_charge, h
 from scipy.integrate import simpson, solve_bvp
 
@@ -183,6 +185,30 @@ def test_both_models_meet_at_threshold_with_the_first_order(pump):
         pump, current_A=threshold * np.array([1.0, 0.5, 0.0]), R_front=0.03, R_rear=0.97
     )
     np.testing.assert_array_equal(below, 1.0)
+
+
+@given(
+    st.sampled_from(list(GainLaw)),
+    st.floats(-6.0, -0.01),
+    st.floats(-3.0, -0.001),
+    st.floats(0.0, 30.0),
+    st.floats(0.0, 4.0),
+)
+def test_hole_burning_never_adds_light(law, log_R1, log_R2, loss, log_current):
+    chip = LaserChip(
+        wavelength_nm=976.0,
+        length_um=3000.0,
+        stripe_um=50.0,
+        internal_loss_per_cm=loss,
+        injection_efficiency=0.9,
+        transparency_A_per_cm2=120.0,
+        modal_gain_per_cm=18.0,
+        gain_law=law,
+    )
+    ratio = axial_power_ratio(
+        chip, current_A=10.0**log_current, R_front=10.0**log_R1, R_rear=10.0**log_R2
+    )
+    assert 0.0 < ratio <= 1.0 + 1e-9
 
 
 def test_swapped_facets_make_the_same_light(pump):

@@ -94,7 +94,7 @@ def test_two_hundred_pairs(high, tm):
 
 
 def test_long_evanescent_mirror_does_not_overflow():
-    """Each pair multiplies the fields by about 50; 400 pairs would reach 1e680."""
+    """Each pair multiplies the fields by about 15; 400 pairs would reach 1e470."""
     scene = Scene([976.0], 3.5, 3.4, [[1.0], [3.4]], q=1.02, tm=[False])
     found = response(scene, [[900.0, 40.0] * 400], film=[0, 1] * 400)
     r, t, big_t, _ = amplitudes(
