@@ -104,8 +104,9 @@ class Cavity:
         high: FloatArray = left * self.length / self.lost_over_root
         if self.loss == 0.0:
             return high
-        crest = 2.0 * np.cosh(np.maximum(self.v_front, -self.v_rear))
-        return np.minimum(high, left / self.loss / crest)
+        bound = self.loss * 2.0 * np.cosh(np.maximum(self.v_front, -self.v_rear))
+        binds = high * bound > left  # left / bound may overflow where it does not bind
+        return np.where(binds, left / np.where(binds, bound, 1.0), high)
 
     def root(self, mesh: Mesh = GAUSS) -> FloatArray:
         """sqrt C of each chip, by Newton's method kept inside a bracket."""

@@ -14,7 +14,6 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 import numpy as np
-from scipy.optimize import brentq
 
 from coatings.errors import ArrayError, Problem
 from coatings.laser.checks import FloatArray, Real
@@ -108,6 +107,8 @@ def highest_locking_R(
     ArrayError
         A locked wavelength where the medium has no gain, a rear without feedback.
     """
+    from scipy.optimize import brentq
+
     rival = rival_nm(chip, external)
     if rival is None or external.fed_back == 0.0:
         return None

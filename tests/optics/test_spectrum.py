@@ -1,6 +1,7 @@
 """R and T against textbook figures, closed forms and another field's library."""
 
 import warnings
+from itertools import pairwise
 
 import numpy as np
 import pytest
@@ -134,7 +135,7 @@ def test_oblique_film_by_summing_its_echoes(tm):
     indices, q, nm, d = (1.0, 2.1 + 0.05j, 1.52), 0.8, 550.0, 130.0
     cosines = [np.sqrt(1 - (q / n) ** 2 + 0j) for n in indices]
     eta = [n / c if tm else n * c for n, c in zip(indices, cosines, strict=True)]
-    r01, r12 = ((a - b) / (a + b) for a, b in zip(eta[:-1], eta[1:], strict=True))
+    r01, r12 = ((a - b) / (a + b) for a, b in pairwise(eta))
     echo = np.exp(4j * np.pi * indices[1] * cosines[1] * d / nm)
     scene = Scene([nm], 1.0, 1.52, [[indices[1]]], q=q, tm=tm)
     r = response(scene, [[d]], film=[0]).r[0, 0]
