@@ -236,10 +236,8 @@ def _palette_conflicts(table: FacetTable, palette: Sequence[str], at: KeyPath) -
 
 
 def _search_conflicts(table: FacetTable, palette: Sequence[str], at: KeyPath) -> Iterator[Found]:
-    if not table.windows and table.layers is None:
-        yield at / "windows", "is missing; a palette needs windows that its stacks must meet"
     if table.max_layers is None:
-        if table.windows or table.layers is None:
+        if table.windows:
             yield at / "max_layers", f"is missing; a palette needs it, from 1 to {MOST_LAYERS}"
         return
     ends_differ = None not in (table.first, table.last) and table.first != table.last
@@ -274,6 +272,8 @@ def _thinnest_nm(table: FacetTable, material: str) -> float:
 
 def facet_notes(table: FacetTable, at: KeyPath) -> Iterator[str]:
     """What a reader should know about limits that can be met, but not as far as they say."""
+    if table.palette is not None and not table.windows and table.layers is None:
+        yield f"{at}: a palette without windows: no stack is searched, the facet counts as it is"
     if table.palette is not None and len(table.palette) == 1 and (table.max_layers or 0) > 1:
         yield (
             f"{at}: with one material in the palette a stack has one layer at most "

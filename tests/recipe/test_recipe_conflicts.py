@@ -146,10 +146,6 @@ CONTRADICTIONS = {
         r"it needs laser\.drive_A$",
     ),
     # search
-    "palette without windows": (
-        document('[front]\npalette = ["Al2O3", "Ta2O5"]\nmax_layers = 4'),
-        r"^front\.windows: is missing; a palette needs windows that its stacks must meet$",
-    ),
     "palette without max_layers": (
         document(front(max_layers=None)),
         r"^front\.max_layers: is missing; a palette needs it, from 1 to 400$",
@@ -242,6 +238,14 @@ CONTRADICTIONS = {
         r"^materials\.X\.fraction: is missing; mixture needs the share of its second material$",
     ),
 }
+
+
+def test_a_palette_without_windows_is_noted() -> None:
+    recipe = parse_recipe(document('[front]\npalette = ["Al2O3", "Ta2O5"]'), path=Path("x.toml"))
+    assert not recipe.front.is_searchable
+    assert recipe.notes == (
+        "front: a palette without windows: no stack is searched, the facet counts as it is",
+    )
 
 
 @pytest.mark.parametrize("case", CONTRADICTIONS, ids=str)
