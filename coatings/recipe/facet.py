@@ -276,6 +276,6 @@ def facet_notes(table: FacetTable, at: KeyPath) -> Iterator[str]:
         yield f"{at}: a palette without windows: no stack is searched, the facet counts as it is"
     if table.palette is not None and len(table.palette) == 1 and (table.max_layers or 0) > 1:
         yield (
-            f"{at}: with one material in the palette a stack has one layer at most "
+            f"{at}.max_layers: with one material in the palette a stack has one layer at most "
             "(neighbours are of different materials); max_layers says more"
         )

@@ -204,7 +204,7 @@ def _recipe(table: RecipeTable, shelf: Shelf, *, text: str, path: Path, sha256: 
     notes = [
         note
         for name, facet in (("front", table.front), ("rear", table.rear))
-        for note in facet_notes(facet, KeyPath((name, "max_layers")))
+        for note in facet_notes(facet, KeyPath((name,)))
     ]
     return Recipe(
         path=path,
