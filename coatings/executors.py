@@ -9,7 +9,7 @@ from __future__ import annotations
 import multiprocessing
 import os
 import signal
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Iterable, Sequence
 from concurrent.futures import Future, ProcessPoolExecutor, as_completed
 from concurrent.futures.process import BrokenProcessPool
 from dataclasses import dataclass
@@ -34,6 +34,93 @@ def default_workers() -> int:
     return os.cpu_count() or 1
 
 
+class Workers:
+    """Up to ``count`` worker processes, started when first needed and kept until the end of ``with``."""
+
+    def __init__(self, count: int) -> None:
+        self.count = count
+        self._pool: ProcessPoolExecutor | None = None
+
+    def __enter__(self) -> Workers:
+        return self
+
+    def __exit__(self, *_: object) -> None:
+        self._stop()
+
+    def run_all(
+        self,
+        function: Callable[[Piece], Result],
+        pieces: Sequence[Piece],
+        *,
+        on_done: Callable[[Piece, Result], None] | None = None,
+    ) -> Outcome[Result]:
+        """Call ``function`` on every piece; an interrupt keeps what is done.
+
+        ``function`` and the pieces must be picklable when there is more than one worker. ``on_done`` is
+        called in this process after each piece. Errors of a piece are raised here.
+        """
+        results: list[Result | None] = [None] * len(pieces)
+
+        def done(number: int, result: Result) -> None:
+            results[number] = result
+            if on_done is not None:
+                on_done(pieces[number], result)
+
+        try:
+            if min(self.count, len(pieces)) <= 1:
+                _run_here(function, pieces, range(len(pieces)), done)
+            else:
+                self._run_in_processes(function, pieces, done)
+        except KeyboardInterrupt:
+            self._stop()
+            return Outcome(tuple(results), cut_short=True)
+        except BaseException:
+            self._stop()
+            raise
+        return Outcome(tuple(results), cut_short=False)
+
+    def _run_in_processes(
+        self,
+        function: Callable[[Piece], Result],
+        pieces: Sequence[Piece],
+        done: Callable[[int, Result], None],
+    ) -> None:
+        left = dict.fromkeys(range(len(pieces)))
+        try:
+            pool = self._started()
+            numbers: dict[Future[Result], int] = {
+                pool.submit(function, piece): number for number, piece in enumerate(pieces)
+            }
+            for future in as_completed(numbers):
+                number = numbers[future]
+                result = future.result()
+                del left[number]
+                done(number, result)
+        except BrokenProcessPool:  # a worker was killed: its pieces are done here, to the same bits
+            self._stop()
+            _run_here(function, pieces, left, done)
+
+    def _started(self) -> ProcessPoolExecutor:
+        if self._pool is None:
+            self._pool = ProcessPoolExecutor(
+                max_workers=self.count,
+                mp_context=multiprocessing.get_context("spawn"),
+                initializer=_prepare_worker,
+            )
+        return self._pool
+
+    def _stop(self) -> None:
+        pool, self._pool = self._pool, None
+        if pool is None:
+            return
+        running = list((pool._processes or {}).values())
+        pool.shutdown(wait=False, cancel_futures=True)
+        for process in running:
+            process.terminate()
+        for process in running:
+            process.join()
+
+
 def run_all(
     function: Callable[[Piece], Result],
     pieces: Sequence[Piece],
@@ -41,76 +128,19 @@ def run_all(
     workers: int,
     on_done: Callable[[Piece, Result], None] | None = None,
 ) -> Outcome[Result]:
-    """Call ``function`` on every piece with up to ``workers`` processes; an interrupt keeps what is done.
-
-    ``function`` and the pieces must be picklable when ``workers`` is above 1. ``on_done`` is called in
-    this process after each piece. Errors of a piece are raised here.
-    """
-    results: list[Result | None] = [None] * len(pieces)
-
-    def done(number: int, result: Result) -> None:
-        results[number] = result
-        if on_done is not None:
-            on_done(pieces[number], result)
-
-    try:
-        if min(workers, len(pieces)) <= 1:
-            for number, piece in enumerate(pieces):
-                done(number, function(piece))
-        else:
-            _run_in_processes(function, pieces, workers, done)
-    except KeyboardInterrupt:
-        return Outcome(tuple(results), cut_short=True)
-    return Outcome(tuple(results), cut_short=False)
+    """`Workers.run_all` with workers for these pieces alone."""
+    with Workers(min(workers, len(pieces))) as crew:
+        return crew.run_all(function, pieces, on_done=on_done)
 
 
-def _run_in_processes(
+def _run_here(
     function: Callable[[Piece], Result],
     pieces: Sequence[Piece],
-    workers: int,
+    numbers: Iterable[int],
     done: Callable[[int, Result], None],
 ) -> None:
-    left = set(range(len(pieces)))
-
-    def finished(number: int, result: Result) -> None:
-        left.discard(number)
-        done(number, result)
-
-    try:
-        _run_in_pool(function, pieces, workers, finished)
-    except BrokenProcessPool:  # a worker was killed: its pieces are done here, to the same bits
-        for number in sorted(left):
-            done(number, function(pieces[number]))
-
-
-def _run_in_pool(
-    function: Callable[[Piece], Result],
-    pieces: Sequence[Piece],
-    workers: int,
-    done: Callable[[int, Result], None],
-) -> None:
-    pool = ProcessPoolExecutor(
-        max_workers=min(workers, len(pieces)),
-        mp_context=multiprocessing.get_context("spawn"),
-        initializer=_prepare_worker,
-    )
-    try:
-        numbers: dict[Future[Result], int] = {
-            pool.submit(function, piece): number for number, piece in enumerate(pieces)
-        }
-        for future in as_completed(numbers):
-            done(numbers[future], future.result())
-    except BaseException:
-        _stop(pool)
-        raise
-    pool.shutdown()
-
-
-def _stop(pool: ProcessPoolExecutor) -> None:
-    running = list((pool._processes or {}).values())
-    pool.shutdown(wait=False, cancel_futures=True)
-    for process in running:
-        process.terminate()
+    for number in numbers:
+        done(number, function(pieces[number]))
 
 
 def _prepare_worker() -> None:

@@ -10,10 +10,7 @@ import click
 from coatings.cli.options import facet_option, recipe_argument, shared_from, shared_options, sides
 
 if TYPE_CHECKING:
-    from rich.console import Console
-
-    from coatings.curve import FacetCurve
-    from coatings.recipe import FacetName, Recipe
+    from coatings.recipe import FacetName
 
 
 @click.command(
@@ -40,8 +37,8 @@ def curve(
 
     Exit status 1 when a window is missed.
     """
+    from coatings.cli.summary import curve_rows
     from coatings.curve import facet_curve
-    from coatings.documents.files import check_file, write_files
     from coatings.documents.results import curve_result, to_text
     from coatings.documents.tables import curve_csv
     from coatings.grids import grid_nm
@@ -50,29 +47,16 @@ def curve(
     shared = shared_from(options)
     loaded = load_recipe(recipe)
     check_available(loaded, "curve")
-    folder = shared.folder(recipe)
-    shared.check_outputs(folder)
-    if csv is not None:
-        check_file(csv, option="--csv")
     grid = None if nm is None else grid_nm(*nm)
+    folder = shared.folder(recipe)
+    outputs = {} if csv is None else {"--csv": csv}
+    shared.check_outputs(outputs, folder=folder, inputs=[recipe, *loaded.table_paths])
     curves = {s: facet_curve(loaded, s, wavelength_nm=grid) for s in sides(facet)}
-    text = to_text(curve_result(loaded, curves, seed=shared.seed, flat=facet is not None))
-    files = shared.json_files(text)
-    if csv is not None:
-        files[csv] = curve_csv(curves).encode()
+    files = {} if csv is None else {csv: curve_csv(curves).encode()}
     if grid is None or len(grid) > 1:
         from coatings.documents.pictures import spectrum_picture
 
         files[folder / "curve.png"] = spectrum_picture(loaded, curves, stacks={}, bands={})
-    write_files(files)
-    shared.print_json(text)
-    _print_summary(shared.console(), loaded, curves, list(files))
+    text = to_text(curve_result(loaded, curves, seed=shared.seed, flat=facet is not None))
+    shared.deliver(files, text, curve_rows(loaded, curves))
     return 0 if all(c.meets for c in curves.values()) else 1
-
-
-def _print_summary(
-    console: Console, recipe: Recipe, curves: dict[FacetName, FacetCurve], files: list[Path]
-) -> None:
-    from coatings.cli.summary import curve_lines, files_lines, print_rows
-
-    print_rows(console, [*curve_lines(recipe, curves), *files_lines(files)])

@@ -2,19 +2,22 @@
 
 from __future__ import annotations
 
+import difflib
 import importlib
 import sys
 
 import click
 
 from coatings import __version__
+from coatings.cli.interrupts import watched_interrupts
+from coatings.cli.screen import complain
 from coatings.errors import CoatingsError
 
 MOST_LINES = 5
 YES, NO, UNUSABLE = 0, 1, 2
 
 # In the order of the work. Each module holds one command of its own name and imports nothing heavy.
-COMMANDS = ("start", "plan", "curve", "materials")
+COMMANDS = ("start", "plan", "curve", "field", "materials")
 
 
 class Commands(click.Group):
@@ -33,6 +36,16 @@ class Commands(click.Group):
         )
         return command
 
+    def resolve_command(
+        self, ctx: click.Context, args: list[str]
+    ) -> tuple[str | None, click.Command | None, list[str]]:
+        """The command that the arguments name; an unknown one is answered with the nearest."""
+        if args and args[0] not in COMMANDS and not args[0].startswith("-"):
+            near = difflib.get_close_matches(args[0], COMMANDS, n=1, cutoff=0.5)
+            hint = f"did you mean '{near[0]}'?" if near else f"expected {', '.join(COMMANDS)}."
+            raise click.UsageError(f"No command '{args[0]}'; {hint}", ctx)
+        return super().resolve_command(ctx, args)
+
 
 @click.group(
     cls=Commands,
@@ -41,7 +54,7 @@ class Commands(click.Group):
 )
 @click.version_option(__version__, prog_name="facetwright")
 def program() -> None:
-    """Facet coatings of semiconductor lasers: from windows to layers, orders and verdicts.
+    """Facet coatings of semiconductor lasers: from windows to layers.
 
     Exit status: 0 done, the answer is yes; 1 done, the answer is no; 2 the input can't be used.
     """
@@ -53,31 +66,35 @@ def main() -> None:
 
 
 def run(arguments: list[str]) -> int:
-    """Run one command line and return its exit status."""
-    try:
-        status = program.main(args=arguments, prog_name="facetwright", standalone_mode=False)
-    except click.ClickException as error:
-        return _refuse([_usage_line(error)])
-    except CoatingsError as error:
-        return _refuse([str(problem) for problem in error.problems])
-    except (KeyboardInterrupt, click.Abort):
-        print("facetwright: stopped; nothing was written", file=sys.stderr)
-        return NO
-    except BrokenPipeError:
-        sys.stderr.close()  # the reader has left: nothing more can be said
-        return NO
+    """Run one command line and return its exit status; without arguments, help is shown."""
+    with watched_interrupts() as interrupts:
+        try:
+            status = program.main(
+                args=arguments or ["--help"], prog_name="facetwright", standalone_mode=False
+            )
+        except click.ClickException as error:
+            return _refuse([_usage_line(error)])
+        except CoatingsError as error:
+            _refuse([str(problem) for problem in error.problems])
+            # What a stopped search could not find is no fault of the input.
+            return NO if interrupts.seen else UNUSABLE
+        except (KeyboardInterrupt, click.Abort):
+            complain("facetwright: stopped; nothing was written")
+            return NO
     return status if isinstance(status, int) else YES
 
 
 def _usage_line(error: click.ClickException) -> str:
     context = getattr(error, "ctx", None)
     command = context.command_path if context is not None else "facetwright"
-    return f"{error.format_message()} See: {command} --help"
+    said = error.format_message().rstrip()
+    stop = "" if said.endswith((".", "?")) else "."
+    return f"{said}{stop} See: {command} --help"
 
 
 def _refuse(lines: list[str]) -> int:
     for line in lines[:MOST_LINES]:
-        print(f"facetwright: {' '.join(line.split())}", file=sys.stderr)
+        complain(f"facetwright: {' '.join(line.split())}")
     if len(lines) > MOST_LINES:
-        print(f"facetwright: and {len(lines) - MOST_LINES} more", file=sys.stderr)
+        complain(f"facetwright: and {len(lines) - MOST_LINES} more")
     return UNUSABLE

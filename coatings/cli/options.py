@@ -2,8 +2,7 @@
 
 from __future__ import annotations
 
-import sys
-from collections.abc import Callable
+from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass
 from pathlib import Path
 from typing import TYPE_CHECKING, Any, TypeVar
@@ -11,8 +10,7 @@ from typing import TYPE_CHECKING, Any, TypeVar
 import click
 
 if TYPE_CHECKING:
-    from rich.console import Console
-
+    from coatings.cli.screen import Row
     from coatings.recipe import FacetName
 
 Command = TypeVar("Command", bound=Callable[..., Any])
@@ -35,32 +33,62 @@ class Shared:
         """Where output files go: ``--out``, or ``out/<recipe name>``."""
         return self.out if self.out is not None else Path("out") / recipe.stem
 
-    def console(self) -> Console:
-        """Where the summary goes; silent under ``--quiet`` and when standard output carries the JSON."""
-        from rich.console import Console
+    def check_outputs(
+        self, files: Mapping[str, Path], *, folder: Path | None, inputs: Iterable[Path]
+    ) -> None:
+        """Refuse outputs that can't be written, or that are inputs, before any work is done.
 
-        silent = self.quiet or self.json == TO_STANDARD_OUTPUT
-        return Console(quiet=silent, highlight=False)
+        ``files``: files that the command writes besides ``--json``, by the option that names them.
+        """
+        from coatings.documents.files import check_apart, check_file, check_folder
 
-    def check_outputs(self, folder: Path) -> None:
-        """Refuse outputs that can't be written before any work is done."""
-        from coatings.documents.files import check_file, check_folder
+        outputs = dict(files)
+        if folder is not None:
+            check_folder(folder)
+        if self.json_path is not None:
+            outputs["--json"] = self.json_path
+        for option, path in outputs.items():
+            is_in_new_folder = path.parent == folder and not folder.exists()
+            if not is_in_new_folder:
+                check_file(path, option=option)
+        check_apart(outputs, inputs)
 
-        check_folder(folder)
-        if self.json not in (None, TO_STANDARD_OUTPUT):
-            check_file(Path(str(self.json)), option="--json")
+    @property
+    def json_path(self) -> Path | None:
+        """The file of ``--json FILE``; None without it and for standard output."""
+        return None if self.json in (None, TO_STANDARD_OUTPUT) else Path(str(self.json))
 
-    def json_files(self, text: str) -> dict[Path, bytes]:
-        """The file that ``--json FILE`` asks for, if any."""
-        if self.json in (None, TO_STANDARD_OUTPUT):
-            return {}
-        return {Path(str(self.json)): text.encode()}
+    def deliver(self, files: Mapping[Path, bytes], text: str, rows: Iterable[Row]) -> None:
+        """Write every file, ``text`` as JSON where it was asked for, and print the summary.
 
-    def print_json(self, text: str) -> None:
-        """Write the JSON to standard output when ``--json -`` asks for it."""
-        if self.json == TO_STANDARD_OUTPUT:
-            sys.stdout.write(text)
-            sys.stdout.flush()
+        The summary is silent under ``--quiet`` and when standard output carries the JSON.
+        """
+        from coatings.cli.screen import complain, print_rows, say_json
+        from coatings.documents.files import write_files
+
+        if self.json_path is not None:
+            files = {**files, self.json_path: text.encode()}
+        write_files(files)
+        try:
+            if self.json == TO_STANDARD_OUTPUT:
+                say_json(text)
+            elif not self.quiet:
+                print_rows([*rows, *files_rows(list(files))])
+        except KeyboardInterrupt:
+            complain("facetwright: stopped while printing; every file is written")
+
+
+def files_rows(files: list[Path]) -> list[Row]:
+    """Where the files are, one row a folder."""
+    from rich.markup import escape
+
+    folders: dict[Path, list[str]] = {}
+    for path in files:
+        folders.setdefault(path.parent, []).append(path.name)
+    return [
+        ("FILES" if number == 0 else "", escape(f"{folder}/: {', '.join(names)}"))
+        for number, (folder, names) in enumerate(folders.items())
+    ]
 
 
 def shared_options(command: Command) -> Command:

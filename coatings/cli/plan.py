@@ -18,7 +18,7 @@ if TYPE_CHECKING:
 @facet_option
 @click.option(
     "--take", type=click.IntRange(min=0), metavar="N",
-    help="Take stack N of the shortlist, counted from 0; needs --facet when both are searched.",
+    help="Take stack N of the shortlist (# in the summary); needs --facet when both are searched.",
 )  # fmt: skip
 @shared_options
 def plan(recipe: Path, facet: FacetName | None, take: int | None, **options: Any) -> int:
@@ -34,5 +34,4 @@ def plan(recipe: Path, facet: FacetName | None, take: int | None, **options: Any
     shared = shared_from(options)
     loaded = load_recipe(recipe)
     check_available(loaded, "plan")
-    shared.check_outputs(shared.folder(recipe))
     return run_plan(loaded, sides=sides(facet), take_number=take, shared=shared)

@@ -2,21 +2,19 @@
 
 from __future__ import annotations
 
-import sys
 from dataclasses import dataclass
 from pathlib import Path
 
 import numpy as np
 
 from coatings.cli.options import Shared
-from coatings.cli.summary import files_lines, plan_lines, print_rows
+from coatings.cli.progress import shown_progress
+from coatings.cli.summary import plan_rows
 from coatings.curve import FacetCurve, default_grid_nm, facet_curve
 from coatings.design.plan import FacetPlan, plan_facets, take
 from coatings.design.relax import Shortfall, shortfall
-from coatings.design.search import Found
 from coatings.design.spread import draw_chips, reflectance_quantiles, run_errors
 from coatings.documents.chosen import chosen_recipe
-from coatings.documents.files import write_files
 from coatings.documents.pictures import power_picture, spectrum_picture, yield_picture
 from coatings.documents.plots import Band
 from coatings.documents.results import plan_result, to_text
@@ -30,6 +28,10 @@ from coatings.stack import Stack
 
 BAND_DRAWS = 2000
 POWER_POINTS = 121
+
+RESULT, CHOSEN = "result.json", "chosen.toml"
+SPECTRA, YIELDS, POWER = "spectra.png", "layers-yield.png", "power.png"
+FILES = (RESULT, CHOSEN, SPECTRA, YIELDS, POWER)
 
 
 @dataclass(frozen=True)
@@ -49,43 +51,64 @@ def run_plan(
     recipe: Recipe, *, sides: tuple[FacetName, ...], take_number: int | None, shared: Shared
 ) -> int:
     """Search, write every file and print the summary; returns the exit status."""
-    planned = planned_product(recipe, sides=sides, take_number=take_number, shared=shared)
     folder = shared.folder(recipe.path)
+    outputs = {f"--out: {name}": folder / name for name in FILES}
+    shared.check_outputs(outputs, folder=folder, inputs=[recipe.path, *recipe.table_paths])
+    _check_task(recipe, sides, take_number)
+    tables = _own_tables(recipe, folder)
+    planned = planned_product(recipe, sides=sides, take_number=take_number, shared=shared)
     text = to_text(
         plan_result(
             recipe,
             planned.plans,
             planned.laser,
+            limits=planned.limits,
             reflectance=_reflectances(planned),
             seed=shared.seed,
         )
     )
-    files = {folder / "result.json": text.encode(), **_documents(planned, folder, shared.seed)}
-    write_files({**files, **shared.json_files(text)})
-    shared.print_json(text)
-    console = shared.console()
-    print_rows(console, [*plan_lines(planned), *files_lines(list(files))])
+    documents = plan_documents(planned, folder, seed=shared.seed)
+    files = {folder / RESULT: text.encode(), **documents, **tables}
+    shared.deliver(files, text, plan_rows(planned))
     cut_short = any(plan.cut_short for plan in planned.plans.values())
     return 0 if all(plan.meets for plan in planned.plans.values()) and not cut_short else 1
+
+
+def _check_task(recipe: Recipe, sides: tuple[FacetName, ...], take_number: int | None) -> None:
+    """Refuse before the search what would only show after it."""
+    if not any(recipe.facets[side].windows for side in sides):
+        raise InputError(
+            Problem(
+                f"{recipe.path}",
+                f"no windows on {' or '.join(sides)}; add [[{sides[0]}.windows]] to say what to reach",
+            )
+        )
+    searched = [side for side in sides if recipe.facets[side].is_searchable]
+    if take_number is not None and len(searched) != 1:
+        what = "both facets are searched" if searched else "nothing is searched"
+        raise InputError(
+            Problem("--take", f"needs one facet that is searched, but {what}; name it with --facet")
+        )
+    if recipe.laser is not None:
+        laser_chip(recipe)
 
 
 def planned_product(
     recipe: Recipe, *, sides: tuple[FacetName, ...], take_number: int | None, shared: Shared
 ) -> Planned:
     """Plans of the facets, the stacks taken, their curves and the laser they make."""
-    if not any(recipe.facets[side].windows for side in sides):
-        raise InputError(
-            Problem(
-                f"{recipe.path}",
-                f"no windows on {' or '.join(sides)}; add [[front.windows]] to say what to reach",
-            )
+    with shown_progress(recipe, sides, quiet=shared.quiet) as progress:
+        plans = plan_facets(
+            recipe,
+            sides=sides,
+            seed=shared.seed,
+            workers=shared.workers or default_workers(),
+            progress=progress,
         )
-    workers = shared.workers or default_workers()
-    plans = plan_facets(
-        recipe, sides=sides, seed=shared.seed, workers=workers, progress=_progress(shared.quiet)
-    )
     if take_number is not None:
-        plans = _with_taken(plans, take_number)
+        plans = {
+            side: take(plan, take_number) if plan.searched else plan for side, plan in plans.items()
+        }
     stacks = {side: plan.stack(plan.taken) for side, plan in plans.items()}
     laser = product_estimate(recipe, stacks)
     return Planned(
@@ -97,26 +120,6 @@ def planned_product(
         limits=() if laser is None else product_limits(recipe, laser),
         shortfalls={s: shortfall(p) for s, p in plans.items() if not p.meets},
     )
-
-
-def _with_taken(plans: dict[FacetName, FacetPlan], number: int) -> dict[FacetName, FacetPlan]:
-    searched = [side for side, plan in plans.items() if plan.searched]
-    if len(searched) != 1:
-        raise InputError(
-            Problem("--take", "needs --facet front or --facet rear: both facets were searched")
-        )
-    return {**plans, searched[0]: take(plans[searched[0]], number)}
-
-
-def _progress(quiet: bool):  # type: ignore[no-untyped-def]
-    if quiet or not sys.stderr.isatty():
-        return None
-
-    def say(side: FacetName, count: int, best: Found | None) -> None:
-        found = "no stack fits" if best is None else f"yield {100 * best.yields.chips:.1f} %"
-        print(f"  searched {side}, {count} layers: {found}", file=sys.stderr)
-
-    return say
 
 
 def _reflectances(planned: Planned) -> dict[FacetName, list[float]]:
@@ -132,29 +135,36 @@ def _reflectances(planned: Planned) -> dict[FacetName, list[float]]:
     }
 
 
-def _documents(planned: Planned, folder: Path, seed: int) -> dict[Path, bytes]:
+def plan_documents(planned: Planned, folder: Path, *, seed: int) -> dict[Path, bytes]:
+    """The recipe with its layers, and the pictures."""
     recipe = planned.recipe
     searched = {s: st for s, st in planned.stacks.items() if planned.plans[s].searched}
     files = {
-        folder / "chosen.toml": chosen_recipe(recipe, searched).encode(),
-        folder / "spectra.png": spectrum_picture(
+        folder / CHOSEN: chosen_recipe(recipe, searched).encode(),
+        folder / SPECTRA: spectrum_picture(
             recipe,
             planned.curves,
             stacks=planned.stacks,
             bands={side: _band(planned, side, seed) for side in planned.curves},
         ),
-        **{
-            folder / path.relative_to(recipe.path.parent): path.read_bytes()
-            for path in recipe.table_paths
-        },
     }
     if searched:
-        files[folder / "layers-yield.png"] = yield_picture(
+        files[folder / YIELDS] = yield_picture(
             {side: plan for side, plan in planned.plans.items() if plan.searched}
         )
     if recipe.laser is not None:
-        files[folder / "power.png"] = _power_picture(planned)
+        files[folder / POWER] = _power_picture(planned)
     return files
+
+
+def _own_tables(recipe: Recipe, folder: Path) -> dict[Path, bytes]:
+    """Copies of the recipe's own tables, so that the chosen recipe finds them beside itself."""
+    copies = {folder / path.relative_to(recipe.path.parent): path for path in recipe.table_paths}
+    return {
+        copy: path.read_bytes()
+        for copy, path in copies.items()
+        if not (copy.exists() and copy.samefile(path))
+    }
 
 
 def _band(planned: Planned, side: FacetName, seed: int) -> Band:

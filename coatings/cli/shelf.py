@@ -17,8 +17,7 @@ ROWS = 11
 def list_result(infos: Sequence[Info]) -> Json:
     """Every entry with range, sample and source."""
     return {
-        "tool": "facetwright",
-        "version": __version__,
+        **_head(),
         "materials": [_provenance(info) for info in infos],
     }
 
@@ -49,8 +48,7 @@ def shown_result(material: Material, nm: tuple[float, float, float] | None) -> J
         raise InputError(Problem("--nm", str(error))) from None
     others = [] if ":" in material.name else materials.compare(material.name)
     return {
-        "tool": "facetwright",
-        "version": __version__,
+        **_head(),
         **_provenance(material.info),
         "wavelength_nm": [float(w) for w in wavelength],
         "n": [float(v) for v in values.real],
@@ -67,6 +65,11 @@ def shown_result(material: Material, nm: tuple[float, float, float] | None) -> J
             for o in others
         ],
     }
+
+
+def _head() -> Json:
+    """What every result carries; no recipe and no chance are in these."""
+    return {"tool": "facetwright", "version": __version__, "recipe_sha256": None, "seed": None}
 
 
 def _provenance(info: Info) -> Json:

@@ -18,6 +18,7 @@ def start(folder: Path, quiet: bool) -> int:
     """Write a commented starter recipe into DIR (default: here). An existing file is never replaced."""
     from importlib.resources import files
 
+    from coatings.cli.screen import say
     from coatings.documents.files import check_folder, write_files
     from coatings.errors import OutputError, Problem
 
@@ -27,5 +28,5 @@ def start(folder: Path, quiet: bool) -> int:
         raise OutputError(Problem(str(path), "is already there; move it away or give another DIR"))
     write_files({path: files("coatings.documents").joinpath(STARTER).read_bytes()})
     if not quiet:
-        click.echo(f"wrote {path}; next: facetwright plan {path}")
+        say(f"wrote {path}; next: facetwright plan {path}\n")
     return 0

@@ -2,13 +2,13 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
 from dataclasses import dataclass
-from itertools import pairwise, product
 
 import numpy as np
 from numpy.typing import NDArray
+from scipy.optimize import linprog
 
+from coatings.design.orders import Orders, rows
 from coatings.facets import FloatArray, IntArray
 from coatings.recipe import Facet, FacetName, ProcessErrors, Recipe
 
@@ -49,15 +49,47 @@ class RunLimits:
         return self.thinnest_nm[film], self.thickest_nm[film]
 
     def possible(self, film: IntArray) -> bool:
-        """Whether any stack in this order of films keeps the total."""
-        return self.total_nm is None or float(self.thinnest_nm[film].sum()) <= self.total_nm
+        """Whether any stack in this order of films keeps every limit."""
+        low, high = self.bounds(film)
+        if bool(np.any(low > high)) or (
+            self.total_nm is not None and float(low.sum()) > self.total_nm + 1e-9
+        ):
+            return False
+        return self.stress_room_N_per_m is None or self.middle(film) is not None
+
+    def middle(self, film: IntArray) -> FloatArray | None:
+        """A stack (L,) [nm] as far inside all limits as there is one, None where there is none.
+
+        Farthest in shares of each layer's range and of each linear limit's: a linear programme.
+        """
+        low, high = self.bounds(film)
+        count, span = len(film), high - low
+        limits = self.linear(film)
+        matrix = [np.append(row, np.abs(row) @ span) for row, _ in limits]
+        cap = [room for _, room in limits]
+        found = linprog(
+            np.append(np.zeros(count), -1.0),
+            A_ub=np.vstack(
+                [
+                    *matrix,
+                    np.column_stack([np.eye(count), span / 2.0]),
+                    np.column_stack([-np.eye(count), span / 2.0]),
+                ]
+            ),
+            b_ub=np.concatenate([cap, high, -low]),
+            bounds=[*zip(low, high, strict=True), (0.0, 1.0)],
+        )
+        if not found.success:
+            return None
+        stack: FloatArray = np.clip(found.x[:count], low, high)
+        return stack
 
     def held(self, nm: FloatArray, *, film: IntArray) -> NDArray[np.bool_]:
         """Which stacks (S, L) keep every limit, within a billionth of a nanometre."""
         low, high = self.bounds(film)
         inside: NDArray[np.bool_] = np.all((nm >= low - 1e-9) & (nm <= high + 1e-9), axis=1)
-        for rows, room in self.linear(film):
-            inside &= room - nm @ rows >= -1e-9
+        for row, room in self.linear(film):
+            inside &= room - nm @ row >= -1e-9
         return inside
 
     def linear(self, film: IntArray) -> list[tuple[FloatArray, float]]:
@@ -72,16 +104,31 @@ class RunLimits:
         return limits
 
     def inside(self, nm: FloatArray, *, film: IntArray) -> FloatArray:
-        """Starts (S, L) [nm] moved into the bounds and, by thinning all layers alike, under the total."""
+        """Starts (S, L) [nm] moved into the bounds and, by thinning all layers alike, under the total;
+        then, where the stress asks for it, towards the `middle` of what is allowed."""
         low, high = self.bounds(film)
         moved = np.clip(nm, low, high)
-        if self.total_nm is None:
+        if self.total_nm is not None:
+            spare = moved - low
+            excess = np.maximum(moved.sum(axis=1) - self.total_nm, 0.0)
+            share = excess / np.maximum(spare.sum(axis=1), 1e-12)
+            moved = low + spare * np.maximum(1.0 - share, 0.0)[:, None]
+        if self.stress_room_N_per_m is None or bool(self.held(moved, film=film).all()):
             return moved
-        spare = moved - low
-        excess = np.maximum(moved.sum(axis=1) - self.total_nm, 0.0)
-        share = excess / np.maximum(spare.sum(axis=1), 1e-12)
-        shrunk: FloatArray = low + spare * np.maximum(1.0 - share, 0.0)[:, None]
-        return shrunk
+        return self._towards_middle(moved, film)
+
+    def _towards_middle(self, nm: FloatArray, film: IntArray) -> FloatArray:
+        middle = self.middle(film)
+        if middle is None:
+            return nm
+        share = np.ones(len(nm))
+        for row, room in self.linear(film):
+            outward = (nm - middle) @ row
+            spare = max(room - float(middle @ row), 0.0)
+            over = outward > spare
+            share[over] = np.minimum(share[over], spare / outward[over])
+        moved: FloatArray = middle + share[:, None] * (nm - middle)
+        return moved
 
     def rounded(self, nm: FloatArray, *, film: IntArray) -> FloatArray:
         """Thicknesses (…, L) [nm] on the grid that can be ordered, inside each layer's bounds."""
@@ -90,39 +137,11 @@ class RunLimits:
         least, most = np.ceil(low * scale - 1e-9), np.floor(high * scale + 1e-9)
         return np.round(np.clip(np.round(nm * scale), least, most) / scale, max(self.decimals, 0))
 
-    def orders(self, count: int, generator: np.random.Generator) -> Iterator[IntArray]:
-        """Orders of films with ``count`` layers, no two neighbours alike, first and last as asked."""
-        free = len(self.palette)
-        if free * max(free - 1, 1) ** (count - 1) <= 4096:
-            every = [order for order in product(self.palette, repeat=count) if self._allowed(order)]
-            if len(every) > MOST_ORDERS:
-                chosen = generator.choice(len(every), MOST_ORDERS, replace=False)
-                every = [every[i] for i in sorted(chosen)]
-            yield from (np.array(order, dtype=np.intp) for order in every)
-        else:
-            yield from self._drawn_orders(count, generator)
-
-    def _allowed(self, order: tuple[int, ...]) -> bool:
-        return (
-            all(a != b for a, b in pairwise(order))
-            and self.first in (None, order[0])
-            and self.last in (None, order[-1])
-            and self.possible(np.array(order, dtype=np.intp))
-        )
-
-    def _drawn_orders(self, count: int, generator: np.random.Generator) -> Iterator[IntArray]:
-        seen: set[tuple[int, ...]] = set()
-        pairs = [(a, b) for a in self.palette for b in self.palette if a != b]
-        for a, b in pairs:  # two films in turn come first: mirrors
-            seen.add(tuple(a if i % 2 == 0 else b for i in range(count)))
-        for _ in range(20 * MOST_ORDERS):
-            if len(seen) >= MOST_ORDERS:
-                break
-            order = [int(generator.choice(self.palette))]
-            while len(order) < count:
-                order.append(int(generator.choice([f for f in self.palette if f != order[-1]])))
-            seen.add(tuple(order))
-        yield from (np.array(o, dtype=np.intp) for o in sorted(seen) if self._allowed(o))
+    def orders(self, count: int, generator: np.random.Generator) -> list[IntArray]:
+        """Orders of films with ``count`` layers that some stack can hold: all, or `MOST_ORDERS`."""
+        allowed = Orders(self.palette, count, self.first, self.last)
+        drawn = [rows(order) for order in allowed.some(MOST_ORDERS, generator)]
+        return [film for film in drawn if self.possible(film)]
 
 
 def run_limits(recipe: Recipe, side: FacetName) -> RunLimits:
@@ -132,7 +151,8 @@ def run_limits(recipe: Recipe, side: FacetName) -> RunLimits:
     films = facet.films
     step = 10.0**-process.decimals_nm
     limits = [facet.layer_limits_nm(name) for name in films]
-    thinnest = np.array([step if low is None else low for low, _ in limits])
+    # a layer of nothing is no layer: the thinnest is one step of what can be ordered
+    thinnest = np.array([step if low is None else max(low, step) for low, _ in limits])
     thickest = np.array(
         [
             _free_thickness_nm(recipe, name) if high is None else high
@@ -147,7 +167,7 @@ def run_limits(recipe: Recipe, side: FacetName) -> RunLimits:
         last=None if facet.last is None else rows[facet.last],
         most_layers=facet.max_layers or 0,
         thinnest_nm=thinnest,
-        thickest_nm=np.maximum(thickest, thinnest),
+        thickest_nm=thickest,
         total_nm=facet.total_nm,
         decimals=process.decimals_nm,
         stress_MPa=stress,
@@ -156,12 +176,11 @@ def run_limits(recipe: Recipe, side: FacetName) -> RunLimits:
 
 
 def _free_thickness_nm(recipe: Recipe, film: str) -> float:
+    """Thickness beyond which nothing new is expected; the modulus of the index, at least 1, keeps a
+    metal or an index near 0 from making it absurd."""
     wavelength = recipe.chip.wavelength_nm
-    return (
-        WAVES_WITHOUT_LIMIT
-        * wavelength
-        / float(recipe.material(film).nk(np.array([wavelength])).real[0])
-    )
+    index = complex(recipe.material(film).nk(np.array([wavelength]))[0])
+    return WAVES_WITHOUT_LIMIT * wavelength / max(abs(index), 1.0)
 
 
 def _stress_room(facet: Facet, process: ProcessErrors) -> tuple[float, float] | None:

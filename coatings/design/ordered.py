@@ -14,25 +14,36 @@ SWEEPS = 6
 Score = Callable[[FloatArray], FloatArray]  # stacks (S, L) [nm] -> (S,), higher is better
 
 
-def best_ordered(nm: FloatArray, *, film: IntArray, limits: RunLimits, score: Score) -> FloatArray:
+def best_ordered(
+    nm: FloatArray, *, film: IntArray, limits: RunLimits, score: Score
+) -> FloatArray | None:
     """Best stack (L,) [nm] on the grid of ordered thicknesses around ``nm``: greedy over single steps
-    of every layer and opposite and equal steps of every two."""
-    here = _kept(limits.rounded(_corners(nm, limits.step_nm), film=film), limits, film)
+    of every layer and opposite and equal steps of every two. None where no stack of the grid around
+    keeps the limits."""
+    here = _kept(_starting(nm, film, limits), limits, film)
     if not len(here):
-        here = limits.rounded(np.maximum(nm - limits.step_nm, limits.bounds(film)[0]), film=film)[
-            None
-        ]
+        return None
     best, best_score = _best(here, score)
     moves = _moves(len(nm)) * limits.step_nm
     for _ in range(SWEEPS):
         near = _kept(limits.rounded(best + moves, film=film), limits, film)
-        if not len(near):
-            break
-        found, found_score = _best(near, score)
+        found, found_score = _best(near, score) if len(near) else (best, best_score)
         if found_score <= best_score:
             break
         best, best_score = found, found_score
     return best
+
+
+def _starting(nm: FloatArray, film: IntArray, limits: RunLimits) -> FloatArray:
+    """Roundings of a stack, and of two that lie further inside the linear limits: a total or a stress
+    that the exact stack keeps to the last digit may not survive the rounding of its layers."""
+    rows = [limits.rounded(_corners(nm, limits.step_nm), film=film)]
+    middle = limits.middle(film) if limits.linear(film) else None
+    if middle is not None:
+        steps = len(nm) * limits.step_nm / max(float(np.abs(middle - nm).sum()), limits.step_nm)
+        for share in (min(steps, 1.0), 1.0):
+            rows.append(limits.rounded(nm + share * (middle - nm), film=film)[None])
+    return np.vstack(rows)
 
 
 def _best(stacks: FloatArray, score: Score) -> tuple[FloatArray, float]:

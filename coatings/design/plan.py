@@ -1,6 +1,6 @@
 """The main job: for every facet the stack that most chips of most runs will meet.
 
-``plan_facets`` searches every layer count of every facet with a palette and windows, and judges the
+``plan_facets`` searches every useful layer count of every facet with a palette and windows, and judges the
 stacks of facets that are already chosen. The shortlist holds the best stack of each layer count.
 """
 
@@ -11,13 +11,14 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
+from coatings.design.counts import count_steps, is_enough
 from coatings.design.limits import RunLimits, run_limits
 from coatings.design.model import FacetModel, facet_frame
 from coatings.design.search import Found, Task, judge, search_count
 from coatings.design.spread import run_errors
 from coatings.design.windows import facet_goal
 from coatings.errors import InputError, Problem
-from coatings.executors import run_all
+from coatings.executors import Workers
 from coatings.facets import SIDES, film_rows
 from coatings.recipe import Facet, FacetName, Recipe
 from coatings.stack import Stack
@@ -98,22 +99,39 @@ def plan_facets(
 def _search(
     tasks: dict[FacetName, Task], workers: int, progress: Progress | None
 ) -> tuple[dict[FacetName, list[Found]], bool]:
-    pieces = [
-        (task, count) for task in tasks.values() for count in range(1, task.limits.most_layers + 1)
-    ]
-    pieces.sort(key=lambda piece: -piece[1])  # the long ones first: workers end together
+    steps: dict[FacetName, list[list[Found]]] = {side: [] for side in tasks}
+    left = {side: count_steps(task.limits.most_layers) for side, task in tasks.items()}
+    cut_short = False
+    with Workers(workers) as crew:
+        while any(left.values()) and not cut_short:
+            pieces = [
+                (tasks[side], count) for side in tasks if left[side] for count in left[side][0]
+            ]
+            found, cut_short = _search_pieces(crew, pieces, progress)
+            for side in [side for side in tasks if left[side]]:
+                steps[side].append(found[side])
+                enough = is_enough(tasks[side], steps[side])
+                left[side] = [] if enough else left[side][1:]
+    for side, searched in steps.items():
+        if not any(searched):
+            raise InputError(_nothing_found(side, tasks[side].limits, cut_short))
+    return {side: [f for step in steps[side] for f in step] for side in tasks}, cut_short
+
+
+def _search_pieces(
+    crew: Workers, pieces: list[tuple[Task, int]], progress: Progress | None
+) -> tuple[dict[FacetName, list[Found]], bool]:
+    """Designs of each facet, and whether the search was cut short."""
+    pieces = sorted(pieces, key=lambda piece: -piece[1])  # long ones first: workers end together
 
     def on_done(piece: tuple[Task, int], found: list[Found]) -> None:
         if progress is not None:
             progress(piece[0].side, piece[1], found[0] if found else None)
 
-    outcome = run_all(_search_piece, pieces, workers=workers, on_done=on_done)
-    found: dict[FacetName, list[Found]] = {side: [] for side in tasks}
+    outcome = crew.run_all(_search_piece, pieces, on_done=on_done)
+    found: dict[FacetName, list[Found]] = {task.side: [] for task, _ in pieces}
     for (task, _), result in zip(pieces, outcome.results, strict=True):
         found[task.side] += result or []
-    for side, designs in found.items():
-        if not designs:
-            raise InputError(_nothing_found(side, tasks[side].limits, outcome.cut_short))
     return found, outcome.cut_short
 
 

@@ -48,15 +48,20 @@ def least_squares(
 
 def _residuals(model: FacetModel, nm: FloatArray, film: IntArray) -> tuple[FloatArray, FloatArray]:
     goal = model.goal
-    R, dR = model.reflectance(nm, film=film)
-    residual, jacobian = (R - goal.centre) / goal.width, dR / goal.width[:, None]
+    on_R = goal.bounded
+    residuals, jacobians = [], []
+    if on_R.any():
+        R, dR = model.reflectance(nm, film=film)
+        width = goal.width[on_R]
+        residuals.append((R[:, on_R] - goal.centre[on_R]) / width)
+        jacobians.append(dR[:, on_R] / width[:, None])
     if goal.constraints.on_absorption:
         A, dA = model.absorptance(nm, film=film)
         capped = goal.absorption_high < 1.0
         scale = np.maximum(goal.absorption_high[capped], 1e-6)
-        residual = np.hstack([residual, A[:, capped] / scale])
-        jacobian = np.concatenate([jacobian, dA[:, capped] / scale[:, None]], axis=1)
-    return residual, jacobian
+        residuals.append(A[:, capped] / scale)
+        jacobians.append(dA[:, capped] / scale[:, None])
+    return np.hstack(residuals), np.concatenate(jacobians, axis=1)
 
 
 def _pinned(
@@ -113,7 +118,9 @@ def _spread_out(members: IntArray, most: int) -> IntArray:
 
 
 def _epigraph(model: FacetModel, nm: FloatArray, film: IntArray, limits: RunLimits) -> FloatArray:
-    unit = float(np.median(model.goal.width))
+    # in units of the windows' width, or of the miss where that is larger: of order one
+    miss = -float(model.margin(nm[None], film=film)[0])
+    unit = max(float(np.median(model.goal.width)), miss)
     cache: dict[bytes, tuple[FloatArray, FloatArray]] = {}
 
     def slack(x: FloatArray) -> tuple[FloatArray, FloatArray]:

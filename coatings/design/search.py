@@ -77,6 +77,9 @@ def _effort(count: int) -> _Effort:
     return _Effort(starts=32, keep=2, finish=4, draws=256, fine_draws=768)
 
 
+SCREENED = 12  # orders of films that get the full search where there are more
+SCREEN_STARTS = 24  # random starts an order while screening
+SCREEN_POINTS = 7  # and wavelengths a window
 LISTED = 3  # designs a layer count that are finished with many draws and judged
 FINE_LOSS = 0.1  # and how much less yield than the best they may have
 FINE_STAGES = (0.15, 0.05)
@@ -87,7 +90,7 @@ def search_count(task: Task, count: int) -> list[Found]:
     generator = np.random.default_rng([task.seed, _side_number(task.side), count])
     thin = task.model.with_goal(task.model.goal.thinned(SEARCH_POINTS))
     candidates: list[_Candidate] = []
-    for film in task.limits.orders(count, generator):
+    for film in _screened(task, thin, task.limits.orders(count, generator), generator):
         candidates += _candidates(task, thin, film, generator)
     leaders = _distinct(candidates, most=_effort(count).finish)
     if task.errors.none:
@@ -100,10 +103,27 @@ def search_count(task: Task, count: int) -> list[Found]:
             for c in listed
             if c.score >= listed[0].score - FINE_LOSS
         ]
+    on_grid = [c for c in ordered if c is not None]
     judged = [
-        judge(task, c.film, c.nm) for c in _distinct(ordered, most=LISTED, apart_nm=_apart_nm(task))
+        judge(task, c.film, c.nm) for c in _distinct(on_grid, most=LISTED, apart_nm=_apart_nm(task))
     ]
     return sorted(judged, key=lambda f: f.rank, reverse=True)
+
+
+def _screened(
+    task: Task, thin: FacetModel, orders: list[IntArray], generator: np.random.Generator
+) -> list[IntArray]:
+    """The orders of films that are worth the full search: all of a few, else those whose best of some
+    quickly refined starts misses the windows' centres least."""
+    if len(orders) <= SCREENED:
+        return orders
+    coarse = task.model.with_goal(task.model.goal.thinned(SCREEN_POINTS))
+    best = []
+    for film in orders:
+        nm = _starts(task, film, SCREEN_STARTS, generator)
+        nm = least_squares(coarse, nm, film=film, limits=task.limits, iterations=6)
+        best.append(float(thin.margin(nm, film=film).max()))
+    return [orders[i] for i in sorted(np.argsort(best)[-SCREENED:])]
 
 
 def _side_number(side: FacetName) -> int:
@@ -131,20 +151,20 @@ def _scored(film: IntArray, nm: FloatArray, scores: FloatArray) -> list[_Candida
 
 
 def _starts(task: Task, film: IntArray, count: int, generator: np.random.Generator) -> FloatArray:
-    spot = starts.OneWavelength.middle_of(task.model)
     by_chance = starts.random_thicknesses(task.limits, film=film, count=count, generator=generator)
-    closed = starts.closed_by_first_layer(spot, task.model, by_chance, film=film)
-    if len(closed) > count:
-        closed = closed[np.sort(generator.choice(len(closed), count, replace=False))]
-    every = np.vstack(
-        [
+    spots = starts.spots(task.model.goal)
+    every = [by_chance]
+    for spot in spots:
+        closed = starts.closed_by_first_layer(spot, task.model, by_chance, film=film)
+        most = count // len(spots)
+        if len(closed) > most:
+            closed = closed[np.sort(generator.choice(len(closed), most, replace=False))]
+        every += [
             starts.quarter_waves(spot, film=film),
-            starts.equal_thicknesses(spot, film=film, steps=max(count // 8, 6)),
+            starts.equal_thicknesses(spot, film=film, steps=max(most // 8, 6)),
             closed,
-            by_chance,
         ]
-    )
-    return task.limits.inside(every, film=film)
+    return task.limits.inside(np.vstack(every), film=film)
 
 
 def _merit(
@@ -160,16 +180,16 @@ def _merit(
     return lambda nm: np.array([smooth.merit(row, tau=tau) for row in nm])
 
 
-def _by_margin(task: Task, candidate: _Candidate) -> _Candidate:
-    """The flattest ordered stack near a candidate."""
+def _by_margin(task: Task, candidate: _Candidate) -> _Candidate | None:
+    """The flattest ordered stack near a candidate, None where the grid holds none."""
     film, limits = candidate.film, task.limits
 
     def score(stacks: FloatArray) -> FloatArray:
         return task.model.margin(stacks, film=film)
 
-    nm = minimax(task.model, candidate.nm, film=film, limits=limits)
-    nm = best_ordered(nm, film=film, limits=limits, score=score)
-    return _Candidate(film, nm, float(score(nm[None])[0]))
+    flattest = minimax(task.model, candidate.nm, film=film, limits=limits)
+    nm = best_ordered(flattest, film=film, limits=limits, score=score)
+    return None if nm is None else _Candidate(film, nm, float(score(nm[None])[0]))
 
 
 def _by_yield(
@@ -190,8 +210,9 @@ def _by_yield(
 
 def _ordered_by_yield(
     task: Task, thin: FacetModel, candidate: _Candidate, generator: np.random.Generator
-) -> _Candidate:
-    """A finished stack climbed once more under many draws and put on the grid of ordered thicknesses."""
+) -> _Candidate | None:
+    """A finished stack climbed once more under many draws and put on the grid of ordered thicknesses;
+    None where the grid holds none."""
     film, limits = candidate.film, task.limits
     draws = draw_mirrored(
         task.errors,
@@ -202,14 +223,14 @@ def _ordered_by_yield(
     smooth = SmoothYield(thin, film, draws)
     if not (smooth.slack(candidate.nm) >= 0.0).any():
         return _by_margin(task, candidate)
-    nm = climb(smooth, candidate.nm, limits=limits, stages=FINE_STAGES)
-    tau = FINE_STAGES[-1] * slack_scale(smooth, nm)
+    finest = climb(smooth, candidate.nm, limits=limits, stages=FINE_STAGES)
+    tau = FINE_STAGES[-1] * slack_scale(smooth, finest)
 
     def score(stacks: FloatArray) -> FloatArray:
         return np.array([smooth.merit(row, tau=tau) for row in stacks])
 
-    nm = best_ordered(nm, film=film, limits=limits, score=score)
-    return _Candidate(film, nm, float(score(nm[None])[0]))
+    nm = best_ordered(finest, film=film, limits=limits, score=score)
+    return None if nm is None else _Candidate(film, nm, float(score(nm[None])[0]))
 
 
 def judge(task: Task, film: IntArray, nm: FloatArray) -> Found:

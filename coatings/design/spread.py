@@ -87,50 +87,74 @@ def run_errors(recipe: Recipe, side: FacetName) -> RunErrors:
     )
 
 
+@dataclass(frozen=True)
+class _Deviates:
+    """Standard normal deviates of R runs and their C chips, one field a source of error."""
+
+    run: FloatArray
+    layer: FloatArray
+    offset: FloatArray
+    film: FloatArray
+    position: FloatArray
+    chip: FloatArray
+
+    @classmethod
+    def drawn(
+        cls, generator: np.random.Generator, *, layers: int, films: int, runs: int, chips: int
+    ) -> _Deviates:
+        normal = generator.standard_normal
+        return cls(
+            run=normal((runs, 1)),
+            layer=normal((runs, layers)),
+            offset=normal((runs, layers)),
+            film=normal((runs, films)),
+            position=normal((runs * chips, 1)),
+            chip=normal(runs * chips),
+        )
+
+    def with_opposites(self) -> _Deviates:
+        """Every run twice, the second time with opposite deviates."""
+        return _Deviates(
+            **{name: np.concatenate([values, -values]) for name, values in vars(self).items()}
+        )
+
+
 def draw_chips(
     errors: RunErrors, *, film: IntArray, count: int, generator: np.random.Generator
 ) -> Draws:
     """``count`` chips, each of another run; ``film`` (L,) rows of all layers."""
-    return _drawn(errors, film, generator, runs=count, chips=1)
+    return draw_runs(errors, film=film, runs=count, chips=1, generator=generator)
 
 
 def draw_runs(
     errors: RunErrors, *, film: IntArray, runs: int, chips: int, generator: np.random.Generator
 ) -> Draws:
     """``runs`` runs of ``chips`` chips each, run after run."""
-    return _drawn(errors, film, generator, runs=runs, chips=chips)
+    deviates = _Deviates.drawn(
+        generator, layers=len(film), films=len(errors.index), runs=runs, chips=chips
+    )
+    return _deposited(errors, film, deviates, chips=chips)
 
 
 def draw_mirrored(
     errors: RunErrors, *, film: IntArray, count: int, generator: np.random.Generator
 ) -> Draws:
-    """``count`` chips in pairs with opposite errors: steadier averages for a search."""
-    half = draw_chips(errors, film=film, count=(count + 1) // 2, generator=generator)
-    pairs = (
-        (half.factor, 2.0 - half.factor),
-        (half.offset_nm, -half.offset_nm),
-        (half.film_shift, -half.film_shift),
-        (half.incident_shift, -half.incident_shift),
+    """``count`` chips (one more when odd) in pairs with opposite errors: steadier averages for a search."""
+    deviates = _Deviates.drawn(
+        generator, layers=len(film), films=len(errors.index), runs=(count + 1) // 2, chips=1
     )
-    return Draws(*(np.concatenate(pair) for pair in pairs))
+    return _deposited(errors, film, deviates.with_opposites(), chips=1)
 
 
-def _drawn(
-    errors: RunErrors, film: IntArray, generator: np.random.Generator, *, runs: int, chips: int
-) -> Draws:
-    layers, films = len(film), len(errors.index)
-    run = errors.run * generator.standard_normal((runs, 1))
-    layer = errors.layer * generator.standard_normal((runs, layers))
-    offset = errors.thickness_sigma_nm * generator.standard_normal((runs, layers))
-    shift = errors.index * generator.standard_normal((runs, films))
-    position = errors.position * generator.standard_normal((runs * chips, 1))
-    incident = errors.chip_index * generator.standard_normal(runs * chips)
-    shift_of_chip = np.repeat(shift, chips, axis=0)
-    factor = 1.0 + np.repeat(run + layer, chips, axis=0) + position
+def _deposited(errors: RunErrors, film: IntArray, z: _Deviates, *, chips: int) -> Draws:
+    run = errors.run * z.run + errors.layer * z.layer
+    shift = np.repeat(errors.index * z.film, chips, axis=0)
+    factor = 1.0 + np.repeat(run, chips, axis=0) + errors.position * z.position
     if errors.holds_optical:
-        held = errors.monitor_index / (errors.monitor_index + shift_of_chip)
+        held = errors.monitor_index / (errors.monitor_index + shift)
         factor = factor * held[:, film]
-    return Draws(factor, np.repeat(offset, chips, axis=0), shift_of_chip, incident)
+    offset = np.repeat(errors.thickness_sigma_nm * z.offset, chips, axis=0)
+    return Draws(factor, offset, shift, errors.chip_index * z.chip)
 
 
 def drawn_slack(model: FacetModel, nm: FloatArray, *, film: IntArray, draws: Draws) -> FloatArray:

@@ -19,9 +19,13 @@ from numpy.typing import NDArray
 
 from coatings.design.limits import RunLimits
 from coatings.design.model import FacetModel
+from coatings.design.windows import Goal
 from coatings.facets import FloatArray, IntArray
 
 ComplexArray = NDArray[np.complex128]
+
+MOST_SPOTS = 3  # windows for which stacks are closed exactly
+MOST_VARIED = 4  # layers at either end of a quarter-wave stack that are varied one by one
 
 
 @dataclass(frozen=True)
@@ -35,17 +39,20 @@ class OneWavelength:
     reflectance: float
 
     @classmethod
-    def middle_of(cls, model: FacetModel) -> OneWavelength:
-        """The point in the middle of a goal, wanting the centre of its bounds."""
-        goal = model.goal
-        p = len(goal.low) // 2
+    def of_window(cls, goal: Goal, members: IntArray) -> OneWavelength:
+        """The middle of a window whose points are ``members``, wanting the middle of two bounds, a
+        quarter of a ceiling alone or half-way from a floor alone to 1: what no layer can close is of
+        no use, and R = 0 or 1 is closed at single thicknesses only."""
+        p = int(members[len(members) // 2])
+        low, high = float(goal.low[p]), float(goal.high[p])
+        wanted = 0.5 * (low + high) if low > 0.0 else 0.25 * high
         scene = goal.scene
         return cls(
             wavelength_nm=float(scene.wavelength_nm[p]),
             incident=complex(scene.incident[p]),
             outside=complex(scene.outside[p]),
             films=scene.films[:, p].real.copy(),
-            reflectance=float(goal.centre[p]),
+            reflectance=wanted,
         )
 
     def quarter_nm(self, film: IntArray) -> FloatArray:
@@ -54,12 +61,22 @@ class OneWavelength:
         return quarter
 
 
+def spots(goal: Goal) -> list[OneWavelength]:
+    """One spot a window, for at most `MOST_SPOTS` windows; windows on the reflectance come first."""
+    members = goal.window_members()
+    on_R = [m for m in members if goal.bounded[m[0]]]
+    return [OneWavelength.of_window(goal, m) for m in (on_R or members)[:MOST_SPOTS]]
+
+
 def quarter_waves(spot: OneWavelength, *, film: IntArray) -> FloatArray:
-    """Quarter waves, each layer or all made half a wave thicker, and halved and stretched ends (S, L) [nm]."""
+    """Quarter waves and their variants (S, L) [nm]: all three quarters; one layer halved, doubled or
+    half a wave thicker, at most `MOST_VARIED` layers at either end."""
     quarter = spot.quarter_nm(film)
     count = len(film)
     rows = [quarter, 3.0 * quarter]
     for j in range(count):
+        if min(j, count - 1 - j) >= MOST_VARIED:
+            continue
         for factor in (0.5, 2.0, 3.0):
             row = quarter.copy()
             row[j] *= factor

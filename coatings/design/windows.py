@@ -18,6 +18,7 @@ from coatings.optics import Scene, reflectance, response
 from coatings.recipe import Facet, FacetName, Recipe, Window
 
 GRID_STEP_NM = 1.0
+LEAST_WIDTH = 1e-6  # reflectance; finer than any facet is made or measured
 
 
 def window_grid_nm(band_nm: tuple[float, float], *, step_nm: float = GRID_STEP_NM) -> FloatArray:
@@ -139,6 +140,12 @@ class Goal:
         return [np.flatnonzero(self.window == number) for number in np.unique(self.window)]
 
     @property
+    def bounded(self) -> NDArray[np.bool_]:
+        """Where (P,) the reflectance is bounded at all; a window may bound the absorptance alone."""
+        bounded: NDArray[np.bool_] = (self.low > 0.0) | (self.high < 1.0)
+        return bounded
+
+    @property
     def centre(self) -> FloatArray:
         """Reflectance (P,) in the middle of two bounds; 0 under a ceiling alone, 1 above a floor alone."""
         floored, capped = self.low > 0.0, self.high < 1.0
@@ -149,11 +156,12 @@ class Goal:
 
     @property
     def width(self) -> FloatArray:
-        """Distance (P,) from the centre to the nearest bound: the scale of a miss."""
+        """Distance (P,) from the centre to the nearest bound: the scale of a miss. A bound that only the
+        centre itself meets (at most 0, at least 1) has the scale `LEAST_WIDTH`."""
         floored, capped = self.low > 0.0, self.high < 1.0
         half = 0.5 * (self.high - self.low)
         one_sided = np.where(capped, self.high, np.where(floored, 1.0 - self.low, 1.0))
-        return np.maximum(np.where(floored & capped, half, one_sided), 1e-9)
+        return np.maximum(np.where(floored & capped, half, one_sided), LEAST_WIDTH)
 
 
 def facet_goal(recipe: Recipe, side: FacetName) -> Goal:

@@ -10,6 +10,7 @@ import numpy as np
 from matplotlib.axes import Axes
 from matplotlib.backends.backend_agg import FigureCanvasAgg
 from matplotlib.figure import Figure
+from matplotlib.layout_engine import ConstrainedLayoutEngine
 
 from coatings.curve import FacetCurve
 from coatings.design.plan import FacetPlan
@@ -46,19 +47,24 @@ def spectrum_picture(
             _frame_windows(spectrum_ax, [w.window for w in curve.windows])
             draw_gates(spectrum_ax, [w.window for w in curve.windows])
             if side in bands:
-                spectrum_ax.legend(loc="best")
-        return _png(figure)
+                spectrum_ax.legend(loc="lower right", bbox_to_anchor=(1.0, 0.99), ncols=3,
+                                   borderaxespad=0.0)  # fmt: skip
+        return png(figure)
 
 
 def yield_picture(plans: Mapping[FacetName, FacetPlan]) -> bytes:
     """Layers against yield, one panel a facet."""
     with mpl.rc_context(STYLE):
-        figure = Figure(figsize=(7.6, 3.2), layout="constrained")
+        above_key = ConstrainedLayoutEngine(rect=(0.0, 0.06, 1.0, 0.94))
+        figure = Figure(figsize=(7.6, 3.3), layout=above_key)
         axes = figure.subplots(1, len(plans), squeeze=False)[0]
-        for ax, (side, plan) in zip(axes, plans.items(), strict=True):
+        for ax, plan in zip(axes, plans.values(), strict=True):
             draw_yields(ax, plan)
-            ax.set_title(side, color=SIDE_COLOURS[side])
-        return _png(figure)
+        figure.text(
+            0.99, 0.005, "ring: taken; filled: the best of its layer count; open: another design",
+            ha="right", va="bottom", fontsize=8, color=INK,
+        )  # fmt: skip
+        return png(figure)
 
 
 def power_picture(power: PowerCurrent, *, drive_A: float | None, title: str) -> bytes:
@@ -70,7 +76,7 @@ def power_picture(power: PowerCurrent, *, drive_A: float | None, title: str) -> 
         draw_power(rear_ax, power, side="rear", drive_A=drive_A)
         rear_ax.set_xlabel("current (A)")
         front_ax.set_title(title)
-        return _png(figure)
+        return png(figure)
 
 
 def material_picture(material: Material) -> bytes:
@@ -86,7 +92,7 @@ def material_picture(material: Material) -> bytes:
         k_ax.set_xlabel("wavelength (nm)")
         k_ax.set_xscale("log")
         n_ax.set_title(f"{material.name}: {material.info.sample}")
-        return _png(figure)
+        return png(figure)
 
 
 def _layers(ax: Axes, recipe: Recipe, side: FacetName, searched: Stack | None) -> None:
@@ -120,7 +126,8 @@ def _frame_windows(ax: Axes, windows: list[Window]) -> None:
     ax.set_ylim(max(low - room, 0.0) if low > 5 * (high - low) else 0.0, min(high + room, 101.0))
 
 
-def _png(figure: Figure) -> bytes:
+def png(figure: Figure) -> bytes:
+    """A figure as PNG bytes, the same for the same picture."""
     FigureCanvasAgg(figure)
     out = BytesIO()
     figure.savefig(out, format="png", metadata={"Software": None})

@@ -8,6 +8,7 @@ from dataclasses import dataclass
 import numpy as np
 from matplotlib.axes import Axes
 from matplotlib.collections import PathCollection
+from matplotlib.colors import to_rgb
 from matplotlib.lines import Line2D
 from matplotlib.patches import Rectangle
 from matplotlib.ticker import MaxNLocator
@@ -17,6 +18,8 @@ from coatings.documents.look import CHIP, GATE, INK, QUIET, SIDE_COLOURS
 from coatings.facets import FacetSpectrum, FloatArray
 from coatings.laser import PowerCurrent
 from coatings.recipe import FacetName, Window
+
+NARROWEST_WRITTEN, NARROWEST_UPRIGHT = 0.007, 0.06  # shares of the drawn width
 
 
 @dataclass(frozen=True)
@@ -83,23 +86,33 @@ def draw_layers(
     boxes = [_box(ax, -end, end, CHIP)]
     ax.text(-0.5 * end, 0.5, "chip", ha="center", va="center", fontsize=8, color=INK)
     at = 0.0
-    for _film, nm, waves in layers:
-        boxes.append(_box(ax, at, waves, colours[_film]))
-        ax.text(
-            at + 0.5 * waves, 0.5, f"{nm:g}", ha="center", va="center", color=INK, fontsize=7,
-            rotation=0.0 if waves / total > 0.06 else 90.0,
-        )  # fmt: skip
+    for film, nm, waves in layers:
+        boxes.append(_box(ax, at, waves, colours[film]))
+        if waves / total > NARROWEST_WRITTEN:
+            ax.text(
+                at + 0.5 * waves, 0.5, f"{nm:g}", ha="center", va="center", fontsize=7,
+                color="white" if _is_dark(colours[film]) else INK,
+                rotation=0.0 if waves / total > NARROWEST_UPRIGHT else 90.0,
+            )  # fmt: skip
         at += waves
     films = dict.fromkeys(film for film, *_ in layers)
     key = [Rectangle((0, 0), 1, 1, facecolor=colours[film], label=film) for film in films]
     if key:
         ax.legend(handles=key, loc="lower left", bbox_to_anchor=(0.1, 0.98), ncols=6, fontsize=8,
                   borderaxespad=0.0, handlelength=1.2, columnspacing=1.2)  # fmt: skip
+        ax.set_title("thickness in nm, optical scale", loc="right", fontsize=8,
+                     fontweight="normal", color=INK)  # fmt: skip
     ax.text(at + 0.2 * end, 0.5, outside, va="center", ha="left", fontsize=8, color=INK)
     ax.set_xlim(-end, at + end)
     ax.set_ylim(0, 1)
     ax.set_axis_off()
     return boxes
+
+
+def _is_dark(colour: str) -> bool:
+    """Whether white is easier to read on a colour than ink."""
+    red, green, blue = to_rgb(colour)
+    return 0.299 * red + 0.587 * green + 0.114 * blue < 0.5
 
 
 def _box(ax: Axes, x: float, width: float, colour: str) -> Rectangle:
@@ -109,23 +122,21 @@ def _box(ax: Axes, x: float, width: float, colour: str) -> Rectangle:
 
 
 def draw_yields(ax: Axes, plan: FacetPlan) -> PathCollection:
-    """Layers against yield: the whole shortlist, the stack taken ringed."""
+    """Layers against yield: the shortlist, the best of each count filled, the stack taken ringed."""
     colour = SIDE_COLOURS[plan.side]
     counts = np.array([len(found.nm) for found in plan.stacks], dtype=float)
     yields = np.array([100 * found.yields.chips for found in plan.stacks])
     best = {c: float(yields[counts == c].max()) for c in np.unique(counts)}
     ax.plot(list(best), list(best.values()), color=colour, lw=1.0, alpha=0.5)
     is_best = np.array([y == best[c] for c, y in zip(counts, yields, strict=True)])
-    faces = [colour if leading else "white" for leading in is_best]
-    points = ax.scatter(counts, yields, s=26, color=faces, edgecolor=colour, zorder=3)
+    ax.scatter(counts[~is_best], yields[~is_best], s=24, color="white", edgecolor=colour, zorder=3)
+    points = ax.scatter(counts[is_best], yields[is_best], s=24, color=colour, zorder=4)
     taken = plan.chosen
     ax.scatter(
-        counts[taken], yields[taken], s=130, facecolor="none", edgecolor=INK, lw=1.4, zorder=4
+        counts[taken], yields[taken], s=130, facecolor="none", edgecolor=INK, lw=1.4, zorder=5
     )
-    ax.annotate(
-        f"{yields[taken]:.1f} %", (counts[taken], yields[taken]), xytext=(-9, -3),
-        textcoords="offset points", ha="right", va="top", fontsize=9, color=INK, fontweight="bold",
-    )  # fmt: skip
+    layers = "1 layer" if counts[taken] == 1 else f"{counts[taken]:.0f} layers"
+    ax.set_title(f"{plan.side}: {yields[taken]:.1f} % with {layers}", color=colour)
     ax.set_xlabel("searched layers")
     ax.set_ylabel("chips inside all windows (%)")
     ax.xaxis.set_major_locator(MaxNLocator(integer=True, nbins=12))

@@ -3,16 +3,18 @@
 from __future__ import annotations
 
 import json
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from typing import Any
 
 from coatings import __version__
 from coatings.curve import FacetCurve
 from coatings.design.plan import FacetPlan
 from coatings.design.search import Found
+from coatings.documents.notes import material_sources, result_notes
 from coatings.facets import FloatArray
-from coatings.laser import LaserEstimate
-from coatings.recipe import Facet, FacetName, Recipe
+from coatings.laser import Judgement, LaserEstimate
+from coatings.recipe import FacetName, Recipe
+from coatings.stack import Stack
 
 TOOL = "facetwright"
 
@@ -40,7 +42,16 @@ def curve_result(
     """Result of ``curve``: one facet ``flat``, or both by side."""
     parts: Json = {side: _curve(curve) for side, curve in curves.items()}
     body: Json = next(iter(parts.values())) if flat else parts
-    return {**head(recipe, seed=seed), **body}
+    return {**head(recipe, seed=seed), **body, **evidence(recipe, dict.fromkeys(curves))}
+
+
+def evidence(
+    recipe: Recipe, stacks: Mapping[FacetName, Stack | None], *more: str
+) -> dict[str, Json | list[Any]]:
+    return {
+        "notes": [*result_notes(recipe, stacks), *more],
+        "materials": material_sources(recipe, stacks),
+    }
 
 
 def _curve(curve: FacetCurve) -> Json:
@@ -67,20 +78,41 @@ def plan_result(
     plans: Mapping[FacetName, FacetPlan],
     laser: LaserEstimate | None,
     *,
+    limits: Sequence[Judgement],
     reflectance: Mapping[FacetName, list[float]],
     seed: int,
 ) -> Json:
-    """Result of ``plan``; ``reflectance`` holds R at the wavelength of operation of each listed stack."""
+    """Result of ``plan``.
+
+    ``limits`` of the product as judged; ``reflectance`` R at the wavelength of operation of each listed
+    stack.
+    """
     result = head(recipe, seed=seed)
     for side, plan in plans.items():
         result[side] = _facet_plan(recipe, plan, reflectance[side])
-    result["laser"] = None if laser is None else laser.to_json_dict()
-    result["cut_short"] = any(plan.cut_short for plan in plans.values())
-    return result
+    stacks = {side: plan.stack(plan.taken) for side, plan in plans.items()}
+    said = () if laser is None else laser.notes
+    return {
+        **result,
+        # No reflector outside is counted: a recipe with [external] is refused by this version.
+        "laser": None if laser is None else {**laser.to_json_dict(), "external": None},
+        "limits": [_limit(judgement) for judgement in limits],
+        "cut_short": any(plan.cut_short for plan in plans.values()),
+        **evidence(recipe, stacks, *said),
+    }
+
+
+def _limit(judgement: Judgement) -> Json:
+    return {
+        "name": judgement.name,
+        "limit": judgement.limit,
+        "value": judgement.value,
+        "kept": judgement.kept,
+    }
 
 
 def _facet_plan(recipe: Recipe, plan: FacetPlan, reflectance: list[float]) -> Json:
-    facet: Facet = getattr(recipe, plan.side)
+    facet = recipe.facets[plan.side]
     return {
         "stacks": [_stack(plan, f, R) for f, R in zip(plan.stacks, reflectance, strict=True)],
         "chosen": plan.chosen,

@@ -63,14 +63,14 @@ def _gain_peak(recipe: Recipe) -> Iterator[KeyPath]:
 
 
 _PLAN = frozenset({"plan"})
-_PLAN_AND_CURVE = frozenset({"plan", "curve"})
+_LIGHT = frozenset({"plan", "curve", "field"})
 
 # Window polarization and of = "coating" need no rows of their own: they differ from the chip's
 # plane wave at normal incidence only with a guide or a tilt, and those are refused.
 ROWS: tuple[Row, ...] = (
-    Row("the reflectivity of a guided mode", _guide, _PLAN_AND_CURVE),
-    Row("a stripe that is tilted to the facet", _tilt, _PLAN_AND_CURVE),
-    Row('a window that takes "trade" as its target', _trade, _PLAN_AND_CURVE),
+    Row("the reflectivity of a guided mode", _guide, _LIGHT),
+    Row("a stripe that is tilted to the facet", _tilt, _LIGHT),
+    Row('a window that takes "trade" as its target', _trade, _LIGHT),
     Row("feedback from an external reflector", _external, _PLAN),
     Row("the shift of a film's index in air", _air_shift, _PLAN),
     Row("gain that depends on wavelength", _gain_peak, _PLAN),

@@ -40,6 +40,13 @@ class Witness(Section):
         le=10.0,
     )
     tooling_sigma: float = number("One-sigma error of tooling", "1", default=0.0, ge=0.0, le=1.0)
+    bandwidth_nm: float = number(
+        "Full width at half maximum of the instrument's slit, triangular; 0 sees single wavelengths",
+        "nm",
+        default=0.0,
+        ge=0.0,
+        le=1000.0,
+    )
     noise: float = number("One-sigma noise of each point", "fraction", default=0.0, ge=0.0, le=1.0)
     scale_sigma: float = number(
         "One-sigma error of the photometer's common factor", "1", default=0.0, ge=0.0, le=1.0
