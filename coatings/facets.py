@@ -9,8 +9,13 @@ import numpy as np
 from numpy.typing import NDArray
 
 from coatings.errors import InputError, Problem
-from coatings.optics import Response, Scene, response
-from coatings.recipe import Facet, FacetName, Recipe
+from coatings.optics import Scene
+from coatings.optics.facet import ModalFacet
+from coatings.optics.guide import Guide, fundamental
+from coatings.optics.guide_modes import GuidedMode
+from coatings.optics.light import Light, ModeLight, PlaneLight
+from coatings.optics.tilt import TiltedFacet, coating_scene
+from coatings.recipe import Facet, FacetName, Recipe, Window
 from coatings.stack import Stack
 from materials.errors import MaterialError
 
@@ -23,7 +28,7 @@ IntArray = NDArray[np.intp]
 @dataclass(frozen=True)
 class FacetSpectrum:
     """What a facet does to the chip's light at P wavelengths [nm]: shares R, T, A and S (P,), which add
-    up to one, and the phase of the reflected tangential electric field [rad]."""
+    up to one, the phase of the reflected tangential electric field [rad], and the model of the light."""
 
     wavelength_nm: FloatArray
     R: FloatArray
@@ -31,6 +36,7 @@ class FacetSpectrum:
     A: FloatArray
     S: FloatArray
     phase_rad: FloatArray
+    model: str
 
 
 def film_rows(names: Sequence[str], films: Sequence[str]) -> IntArray:
@@ -39,38 +45,124 @@ def film_rows(names: Sequence[str], films: Sequence[str]) -> IntArray:
     return np.array([rows[name] for name in names], dtype=np.intp)
 
 
-def facet_scene(
-    recipe: Recipe,
-    facet: Facet,
-    *,
-    wavelength_nm: FloatArray,
-    incident: FloatArray | None = None,
-) -> Scene:
-    """Scene of a facet on the chip, one row of films a name of ``facet.films``.
+@dataclass(frozen=True)
+class View:
+    """How a facet is looked at: polarization of the chip, ``plane`` for the plane wave even when a guide is
+    given, ``index`` the modal index of a sister chip at the wavelength of operation, ``coating`` for the film
+    alone at the tilt angle instead of what returns into the mode."""
 
-    Parameters: ``wavelength_nm`` (P,) [nm]; ``incident`` (P,) modal index, the chip's own by default.
-    Raises InputError where a material does not reach a wavelength.
+    tm: bool
+    plane: bool = False
+    index: float | None = None
+    coating: bool = False
+
+
+def chip_view(recipe: Recipe, *, plane: bool = False) -> View:
+    """The chip's own light."""
+    return View(tm=recipe.chip.polarization == "TM", plane=plane)
+
+
+def window_views(recipe: Recipe, window: Window) -> tuple[View, ...]:
+    """The lights that a window judges: one, or one a polarization."""
+    kinds = {"TE": (False,), "TM": (True,), "both": (False, True)}[window.polarization]
+    alone = window.of == "coating"
+    return tuple(View(tm=tm, index=window.index, coating=alone) for tm in kinds)
+
+
+def light_on(recipe: Recipe, facet: Facet, *, wavelength_nm: FloatArray, view: View) -> Light:
+    """What the facet does to light at ``wavelength_nm`` (P,) [nm], one row of films a name of ``facet.films``.
+
+    The guided mode when the recipe has a guide, else the plane wave at the modal index. Raises InputError
+    where a material does not reach a wavelength or the guide holds no mode.
     """
     try:
-        films = [recipe.material(name).nk(wavelength_nm) for name in facet.films]
-        own = recipe.chip_index(wavelength_nm)
-        return Scene(
-            wavelength_nm=wavelength_nm,
-            incident=(own if incident is None else incident).astype(complex),
-            outside=outside_index(recipe, facet, wavelength_nm),
-            films=np.array(films, dtype=complex).reshape(len(films), len(wavelength_nm)),
-        )
+        return _light(recipe, facet, wavelength_nm, view)
     except MaterialError as error:
         raise InputError(Problem(f"{recipe.path}: {facet.name}", str(error))) from None
 
 
-def outside_index(
+def _light(recipe: Recipe, facet: Facet, wavelength_nm: FloatArray, view: View) -> Light:
+    chip = recipe.chip
+    films, outside = _films(recipe, facet, wavelength_nm)
+    modal = None
+    if chip.guide is not None and not view.plane:
+        mode = chip_mode(recipe, wavelength_nm, tm=view.tm, index=view.index)
+        modal = ModalFacet(mode, outside, films)
+        if chip.tilt_deg == 0.0:
+            return ModeLight(modal)
+    incident = modal_index(recipe, wavelength_nm, view=view)
+    plane = Scene(wavelength_nm, incident, outside, films, tm=view.tm)
+    if chip.tilt_deg == 0.0 or view.plane:
+        return PlaneLight(plane)
+    if view.coating:
+        return PlaneLight(coating_scene(plane, tilt_deg=chip.tilt_deg), "tilted")
+    return ModeLight(TiltedFacet(plane, chip.tilt_deg, chip.lateral_um, modal))
+
+
+def facet_scene(recipe: Recipe, facet: Facet, *, wavelength_nm: FloatArray) -> Scene:
+    """The plane wave's scene of a facet at ``wavelength_nm`` (P,) [nm]; errors as for `light_on`."""
+    light = light_on(recipe, facet, wavelength_nm=wavelength_nm, view=chip_view(recipe, plane=True))
+    return light.plane
+
+
+def modal_index(recipe: Recipe, wavelength_nm: FloatArray, *, view: View) -> NDArray[np.complex128]:
+    """Modal index (P,) of the chip or its sister: the guide's effective index, or the recipe's own."""
+    if recipe.chip.guide is not None:
+        return chip_mode(recipe, wavelength_nm, tm=view.tm, index=view.index).n_eff
+    if view.index is None:
+        return recipe.chip_index(wavelength_nm).astype(complex)
+    return recipe.sister_index(view.index, wavelength_nm).astype(complex)
+
+
+def chip_guide(recipe: Recipe, wavelength_nm: FloatArray) -> Guide:
+    """The epitaxial guide of a recipe that has one, dispersion of its materials included."""
+    guide = recipe.chip.guide
+    if guide is None:
+        raise InputError(Problem(f"{recipe.path}: chip.guide", "is missing; give its layers"))
+    index, slope = [], []
+    for layer in guide.layers:
+        if layer.material is None:
+            index.append(np.full(len(wavelength_nm), complex(layer.index or 0.0)))
+            slope.append(np.zeros(len(wavelength_nm), dtype=complex))
+        else:
+            material = recipe.material(layer.material)
+            index.append(material.nk(wavelength_nm))
+            slope.append(material.slope(wavelength_nm))
+    thickness = [layer.um for layer in guide.layers[1:-1]]
+    return Guide(wavelength_nm, np.array(index), np.array(thickness), np.array(slope))
+
+
+def chip_mode(
+    recipe: Recipe, wavelength_nm: FloatArray, *, tm: bool, index: float | None = None
+) -> GuidedMode:
+    """Fundamental mode of the chip's guide. A sister chip's ``index`` is reached by adding the same to the
+    index of every layer, so that the mode has it at the wavelength of operation."""
+    try:
+        guide = chip_guide(recipe, wavelength_nm)
+        if index is not None:
+            guide = guide.shifted(_sister_shift(recipe, index, tm=tm))
+        return fundamental(guide, tm=tm)
+    except InputError as error:
+        raise InputError(
+            [Problem(f"{recipe.path}: chip.guide", problem.what) for problem in error.problems]
+        ) from None
+
+
+def _sister_shift(recipe: Recipe, index: float, *, tm: bool) -> float:
+    guide = chip_guide(recipe, np.array([recipe.chip.wavelength_nm]))
+    shift = 0.0
+    for _ in range(3):  # the effective index follows a common shift almost one to one
+        found = float(fundamental(guide.shifted(shift), tm=tm).n_eff[0].real)
+        shift += index - found
+    return shift
+
+
+def _films(
     recipe: Recipe, facet: Facet, wavelength_nm: FloatArray
-) -> NDArray[np.complex128]:
-    """Index (P,) of what lies beyond the coating."""
-    if isinstance(facet.outside, str):
-        return recipe.material(facet.outside).nk(wavelength_nm)
-    return np.full(len(wavelength_nm), facet.outside, dtype=complex)
+) -> tuple[NDArray[np.complex128], NDArray[np.complex128]]:
+    films = [recipe.material(name).nk(wavelength_nm) for name in facet.films]
+    table = np.array(films, dtype=complex).reshape(len(films), len(wavelength_nm))
+    return table, recipe.index_of(facet.outside, wavelength_nm)
 
 
 def stack_of(facet: Facet, searched: Stack | None = None) -> Stack:
@@ -84,25 +176,32 @@ def stack_of(facet: Facet, searched: Stack | None = None) -> Stack:
 
 
 def facet_spectrum(
-    recipe: Recipe, side: FacetName, *, wavelength_nm: FloatArray, searched: Stack | None = None
+    recipe: Recipe,
+    side: FacetName,
+    *,
+    wavelength_nm: FloatArray,
+    searched: Stack | None = None,
+    plane: bool = False,
 ) -> FacetSpectrum:
     """Spectrum of a facet with its own layers or with ``searched`` ones between base and cap.
 
-    Parameters: ``side`` "front" or "rear"; ``wavelength_nm`` (P,) [nm].
+    Parameters: ``wavelength_nm`` (P,) [nm]; ``plane`` for the plane wave even when a guide is given.
     """
     facet = recipe.facets[side]
-    scene = facet_scene(recipe, facet, wavelength_nm=wavelength_nm)
+    light = light_on(
+        recipe, facet, wavelength_nm=wavelength_nm, view=chip_view(recipe, plane=plane)
+    )
     stack = stack_of(facet, searched)
-    light: Response = response(
-        scene,
+    found = light.shares(
         np.array(stack.nm, dtype=float).reshape(1, len(stack)),
         film=film_rows(stack.materials, facet.films),
     )
     return FacetSpectrum(
         wavelength_nm=wavelength_nm,
-        R=light.R[0],
-        T=light.T[0],
-        A=light.A[0],
-        S=np.zeros(len(wavelength_nm)),  # a plane wave has nowhere else to go
-        phase_rad=light.phase_rad[0],
+        R=found.R[0],
+        T=found.T[0],
+        A=found.A[0],
+        S=found.S[0],
+        phase_rad=np.angle(found.r[0]),
+        model=light.model,
     )

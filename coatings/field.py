@@ -16,7 +16,7 @@ from coatings.facets import FloatArray, facet_scene, film_rows, stack_of
 from coatings.laser import LaserEstimate
 from coatings.optics.field import Profile, StandingWave, standing_wave
 from coatings.optics.flow import chip_flow_MW_per_cm2, field_V_per_m
-from coatings.product import facet_light, product_estimate
+from coatings.product import facet_light, mode_height_um, product_estimate
 from coatings.recipe import FacetName, Recipe
 from coatings.stack import Stack
 
@@ -101,8 +101,9 @@ def _at_work(
         return None
     power = estimate.front_W * arriving
     peak = face = None
-    if laser.mode_height_um is not None:
-        area = recipe.chip.emitters * recipe.chip.stripe_um * laser.mode_height_um
+    height = mode_height_um(recipe)
+    if height is not None:
+        area = recipe.chip.emitters * recipe.chip.stripe_um * height
         flow = chip_flow_MW_per_cm2(leaving_W=power, T=1.0, area_um2=area)
         peak = field_V_per_m(
             wave.layer_peak_E2[0], flow_MW_per_cm2=flow, flow_index=wave.flow_index[0]

@@ -7,7 +7,7 @@ from collections.abc import Mapping
 import numpy as np
 
 from coatings.errors import InputError, Problem
-from coatings.facets import SIDES, facet_spectrum
+from coatings.facets import SIDES, chip_mode, facet_spectrum
 from coatings.laser import (
     FacetLight,
     GainLaw,
@@ -52,8 +52,17 @@ def laser_chip(recipe: Recipe) -> LaserChip:
         reference_C=laser.reference_C,
         t0_K=laser.t0_K,
         t1_K=laser.t1_K,
-        mode_height_um=laser.mode_height_um,
+        mode_height_um=mode_height_um(recipe),
     )
+
+
+def mode_height_um(recipe: Recipe) -> float | None:
+    """Effective height of the near field [um], int |E|^2 dx / max |E|^2: the guide's, else the recipe's own."""
+    if recipe.chip.guide is not None:
+        at = np.array([recipe.chip.wavelength_nm])
+        mode = chip_mode(recipe, at, tm=recipe.chip.polarization == "TM")
+        return float(mode.near_field_height_um[0])
+    return None if recipe.laser is None else recipe.laser.mode_height_um
 
 
 def facet_light(recipe: Recipe, side: FacetName, searched: Stack | None = None) -> FacetLight:

@@ -20,7 +20,7 @@ from coatings.documents.plots import Band
 from coatings.documents.results import plan_result, to_text
 from coatings.errors import InputError, Problem
 from coatings.executors import default_workers
-from coatings.facets import facet_scene, facet_spectrum, film_rows, stack_of
+from coatings.facets import chip_view, facet_spectrum, film_rows, light_on, stack_of
 from coatings.laser import Judgement, LaserEstimate, power_current
 from coatings.product import facet_light, laser_chip, product_estimate, product_limits
 from coatings.recipe import FacetName, Recipe
@@ -179,8 +179,8 @@ def _band(planned: Planned, side: FacetName, seed: int) -> Band:
         count=BAND_DRAWS,
         generator=np.random.default_rng([seed, 7]),
     )
-    scene = facet_scene(recipe, facet, wavelength_nm=grid)
-    low, middle, high = reflectance_quantiles(scene, np.array(stack.nm), film=film, draws=draws)
+    light = light_on(recipe, facet, wavelength_nm=grid, view=chip_view(recipe))
+    low, middle, high = reflectance_quantiles(light, np.array(stack.nm), film=film, draws=draws)
     return Band(grid, low, middle, high)
 
 

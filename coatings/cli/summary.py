@@ -9,8 +9,7 @@ import numpy as np
 from rich.markup import escape
 
 from coatings.cli.laser_summary import laser_rows
-from coatings.cli.words import layers_text, percent, side_label, title
-from coatings.design.relax import MORE_LAYERS
+from coatings.cli.words import layers_text, percent, side_label, title, window_text
 from coatings.documents.notes import result_notes
 from coatings.facets import facet_spectrum
 from coatings.recipe.process import process_errors
@@ -62,7 +61,7 @@ def curve_rows(recipe: Recipe, curves: Mapping[FacetName, FacetCurve]) -> Iterat
             )
             yield (
                 "",
-                f"{escape(window.window.label())}: {verdict} (at {window.worst_nm:g} nm)",
+                f"{escape(window_text(window.window))}: {verdict} (at {window.worst_nm:g} nm)",
             )
         if not curve.windows:
             yield "", "no windows to meet"
@@ -101,6 +100,8 @@ def _next_layer(plan: FacetPlan, *, by_margin: bool) -> str:
 
 def shortfall_text(short: Shortfall, plan: FacetPlan) -> str:
     """By how much a window is missed and what would help."""
+    from coatings.design.relax import MORE_LAYERS
+
     wider = f"a window wider by {percent(short.miss)}"
     if short.layers_that_meet is not None:
         help_with = f"max_layers = {short.layers_that_meet}, or {wider}"
@@ -124,7 +125,7 @@ def _facet_rows(planned: Planned, side: FacetName, plan: FacetPlan) -> Iterator[
     R = float(facet_spectrum(recipe, side, wavelength_nm=at, searched=stack).R[0])
     margin = percent(abs(taken.margin))
     spare = f"{margin} to spare" if taken.margin >= 0 else f"[bold]OUTSIDE by {margin}[/bold]"
-    windows = escape("; ".join(window.label() for window in facet.windows))
+    windows = escape("; ".join(window_text(window) for window in facet.windows))
     yield side_label(side), f"{windows}: R {percent(R)} at {at[0]:g} nm, {spare}"
     yield "", escape(layers_text(stack) + _around(facet))
     y = taken.yields

@@ -11,7 +11,7 @@ from coatings.documents.look import SIDE_COLOURS
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
-    from coatings.recipe import FacetName, Recipe
+    from coatings.recipe import FacetName, Recipe, Window
     from coatings.stack import Stack
 
 MOST_NUMBERS = 18
@@ -25,6 +25,22 @@ def percent(share: float) -> str:
     if abs(value) >= 0.1:
         return f"{value:.2f} %"
     return f"{value:.2g} %"
+
+
+def window_text(window: Window) -> str:
+    """What a window asks for, in percent: ``4 to 6 % over 955-997 nm``."""
+    low, high = (None if v is None else f"{100 * v:.6g}" for v in (window.low, window.high))
+    parts = []
+    if low is not None and high is not None:
+        parts.append(f"{low} to {high} %")
+    elif low is not None or high is not None:
+        parts.append(f"at least {low} %" if high is None else f"at most {high} %")
+    if window.absorption_at_most is not None:
+        parts.append(f"absorption at most {100 * window.absorption_at_most:.6g} %")
+    first, last = window.band_nm
+    band = f"{first:g} nm" if first == last else f"{first:g}-{last:g} nm"
+    sister = "" if window.index is None else f", index {window.index:g}"
+    return f"{', '.join(parts)} over {band}{sister}"
 
 
 def watts(power_W: float) -> str:

@@ -7,7 +7,8 @@ the same (common random numbers), the gradient is exact: one backward pass a chi
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -19,7 +20,6 @@ from coatings.design.model import FacetModel
 from coatings.design.polish import NM_UNIT, linear_constraint
 from coatings.design.spread import Draws, drawn_slack
 from coatings.facets import FloatArray, IntArray
-from coatings.optics import gradient, weighted_gradient
 
 STAGES = (0.6, 0.25, 0.1)  # tau in units of the spread of the chips' slack
 TAIL = 1e-3
@@ -68,14 +68,22 @@ class SmoothYield:
         self, deposited: FloatArray, rows: IntArray, weight: FloatArray, absorbed: NDArray[np.bool_]
     ) -> FloatArray:
         """Sum over points of weight times the slope of R, or of A for the chips in ``absorbed``."""
-        scene, draws = self.model.goal.scene, self.draws
-        shifts = {"film_shift": draws.film_shift, "incident_shift": draws.incident_shift}
+        light, draws = self.model.goal.light, self.draws
+        shifts: dict[str, Any] = {
+            "film_shift": draws.film_shift,
+            "incident_shift": draws.incident_shift,
+        }
         on_R = np.where(absorbed[:, None], 0.0, weight)
-        slope = weighted_gradient(scene, deposited, film=rows, weight=on_R, **shifts)[1]
+        slope = light.weighted_gradient(deposited, film=rows, weight=on_R, **shifts)
         if absorbed.any():
-            slope_A = gradient(scene, deposited, film=rows, of="A", **shifts)[1]
-            slope = slope + np.einsum("sp,spl->sl", weight - on_R, slope_A)
+            slope = slope + light.weighted_gradient(
+                deposited, film=rows, weight=weight - on_R, of="A", **shifts
+            )
         return slope
+
+    def near(self, nm: FloatArray) -> SmoothYield:
+        """The same with a light that is quick near one stack (L,) [nm]."""
+        return replace(self, model=self.model.near(nm, film=self.film))
 
 
 def climb(
@@ -93,10 +101,13 @@ def climb(
         linear_constraint(row * NM_UNIT, room) for row, room in limits.linear(smooth.film)
     ]
     for stage in stages:
-        tau = stage * slack_scale(smooth, nm)
+        local = smooth.near(nm)
+        tau = stage * slack_scale(local, nm)
 
-        def downhill(x: FloatArray, tau: float = tau) -> tuple[float, FloatArray]:
-            value, slope = smooth.gradient(x * NM_UNIT, tau=tau)
+        def downhill(
+            x: FloatArray, tau: float = tau, local: SmoothYield = local
+        ) -> tuple[float, FloatArray]:
+            value, slope = local.gradient(x * NM_UNIT, tau=tau)
             return -value, -slope * NM_UNIT
 
         result = minimize(
@@ -109,7 +120,7 @@ def climb(
             options={"maxiter": iterations, "ftol": 1e-5},
         )
         found = limits.inside(result.x[None] * NM_UNIT, film=smooth.film)[0]
-        if smooth.value(found, tau=tau) > smooth.value(nm, tau=tau):
+        if smooth.near(found).value(found, tau=tau) > local.value(nm, tau=tau):
             nm = found
     return nm
 

@@ -9,7 +9,6 @@ import numpy as np
 
 from coatings.design.windows import Goal
 from coatings.facets import FloatArray, IntArray, film_rows
-from coatings.optics import gradient
 from coatings.recipe import Facet
 
 
@@ -53,6 +52,11 @@ class FacetModel:
         """The same facet judged elsewhere."""
         return replace(self, goal=goal)
 
+    def near(self, nm: FloatArray, *, film: IntArray) -> FacetModel:
+        """The same facet, quick near one stack of searched layers (L,) [nm]; itself for a plane wave."""
+        rows = self.frame.film(film)
+        return self.with_goal(self.goal.near(self.frame.nm(nm[None])[0], film=rows))
+
     def slack(self, nm: FloatArray, *, film: IntArray) -> FloatArray:
         """Slack (S, Q) of every constraint."""
         return self.goal.slack(self.frame.nm(nm), film=self.frame.film(film))
@@ -87,8 +91,8 @@ class FacetModel:
     def _gradient(
         self, nm: FloatArray, film: IntArray, of: Literal["R", "A"]
     ) -> tuple[FloatArray, FloatArray]:
-        value, slope = gradient(
-            self.goal.scene, self.frame.nm(nm), film=self.frame.film(film), of=of
+        value, slope = self.goal.light.gradient(
+            self.frame.nm(nm), film=self.frame.film(film), of=of
         )
         return value, slope[:, :, self.frame.searched]
 

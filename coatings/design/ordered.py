@@ -9,29 +9,45 @@ import numpy as np
 from coatings.design.limits import RunLimits
 from coatings.facets import FloatArray, IntArray
 
-SWEEPS = 6
+SWEEPS = 12
 
 Score = Callable[[FloatArray], FloatArray]  # stacks (S, L) [nm] -> (S,), higher is better
 
 
 def best_ordered(
-    nm: FloatArray, *, film: IntArray, limits: RunLimits, score: Score
+    nm: FloatArray, *, film: IntArray, limits: RunLimits, score: Score, breadth: int = 1
 ) -> FloatArray | None:
-    """Best stack (L,) [nm] on the grid of ordered thicknesses around ``nm``: greedy over single steps
-    of every layer and opposite and equal steps of every two. None where no stack of the grid around
-    keeps the limits."""
-    here = _kept(_starting(nm, film, limits), limits, film)
-    if not len(here):
+    """Best stack (L,) [nm] on the grid of ordered thicknesses around ``nm``. None where no stack of the
+    grid around keeps the limits.
+
+    The ``breadth`` best roundings are moved on together, by single steps of every layer and opposite and
+    equal steps of every two, for as long as one of their neighbours is among the ``breadth`` best.
+    """
+    best = _kept(_starting(nm, film, limits), limits, film)
+    if not len(best):
         return None
-    best, best_score = _best(here, score)
+    best, scores = _leading(best, score(best), breadth)
     moves = _moves(len(nm)) * limits.step_nm
+    fresh = best
     for _ in range(SWEEPS):
-        near = _kept(limits.rounded(best + moves, film=film), limits, film)
-        found, found_score = _best(near, score) if len(near) else (best, best_score)
-        if found_score <= best_score:
+        near = _kept(limits.rounded(_around(fresh, moves), film=film), limits, film)
+        near = near[~(near[:, None] == best[None]).all(axis=2).any(axis=1)]
+        if not len(near):
             break
-        best, best_score = found, found_score
-    return best
+        found, found_scores = _leading(
+            np.vstack([best, near]), np.append(scores, score(near)), breadth
+        )
+        fresh = found[~(found[:, None] == best[None]).all(axis=2).any(axis=1)]
+        best, scores = found, found_scores
+        if not len(fresh):
+            break
+    leader: FloatArray = best[0]
+    return leader
+
+
+def _around(stacks: FloatArray, moves: FloatArray) -> FloatArray:
+    near: FloatArray = (stacks[:, None] + moves[None]).reshape(-1, stacks.shape[1])
+    return near
 
 
 def _starting(nm: FloatArray, film: IntArray, limits: RunLimits) -> FloatArray:
@@ -46,10 +62,10 @@ def _starting(nm: FloatArray, film: IntArray, limits: RunLimits) -> FloatArray:
     return np.vstack(rows)
 
 
-def _best(stacks: FloatArray, score: Score) -> tuple[FloatArray, float]:
-    scores = score(stacks)
-    top = int(np.argmax(scores))
-    return stacks[top], float(scores[top])
+def _leading(stacks: FloatArray, scores: FloatArray, breadth: int) -> tuple[FloatArray, FloatArray]:
+    """The ``breadth`` best, best first; among equals the one that came first."""
+    top = np.argsort(-scores, kind="stable")[:breadth]
+    return stacks[top], scores[top]
 
 
 def _kept(stacks: FloatArray, limits: RunLimits, film: IntArray) -> FloatArray:

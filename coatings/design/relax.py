@@ -1,18 +1,16 @@
 """What is missing when a window can't be met, and what would help.
 
-Three remedies are tried, each computed: a wider window (by the miss itself), more layers of the same
-palette, another film beside the palette.
+Two remedies are computed: a window that is wider by the miss itself, and more layers of the same palette.
 """
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 
 import numpy as np
 
 from coatings.design.plan import FacetPlan
 from coatings.design.search import Task, search_count
-from coatings.design.windows import Goal
 
 MORE_LAYERS = 2
 
@@ -52,13 +50,7 @@ def shortfall(plan: FacetPlan) -> Shortfall:
 
 def _layers_that_meet(task: Task) -> int | None:
     most = task.limits.most_layers
-    quick = replace(task, model=task.model.with_goal(_coarse(task.model.goal)))
     for count in range(most + 1, most + MORE_LAYERS + 1):
-        found = search_count(quick, count)
-        if found and found[0].margin >= 0.0:
+        if any(found.margin >= 0.0 for found in search_count(task, count)):
             return count
     return None
-
-
-def _coarse(goal: Goal) -> Goal:
-    return goal.thinned(61)

@@ -81,6 +81,7 @@ SCREENED = 12  # orders of films that get the full search where there are more
 SCREEN_STARTS = 24  # random starts an order while screening
 SCREEN_POINTS = 7  # and wavelengths a window
 LISTED = 3  # designs a layer count that are finished with many draws and judged
+BREADTH = 12  # roundings that are followed on the grid where the margin is sought
 FINE_LOSS = 0.1  # and how much less yield than the best they may have
 FINE_STAGES = (0.15, 0.05)
 
@@ -117,12 +118,12 @@ def _screened(
     quickly refined starts misses the windows' centres least."""
     if len(orders) <= SCREENED:
         return orders
-    coarse = task.model.with_goal(task.model.goal.thinned(SCREEN_POINTS))
+    coarse = task.model.with_goal(task.model.goal.thinned(SCREEN_POINTS).rough)
     best = []
     for film in orders:
         nm = _starts(task, film, SCREEN_STARTS, generator)
         nm = least_squares(coarse, nm, film=film, limits=task.limits, iterations=6)
-        best.append(float(thin.margin(nm, film=film).max()))
+        best.append(float(coarse.margin(nm, film=film).max()))
     return [orders[i] for i in sorted(np.argsort(best)[-SCREENED:])]
 
 
@@ -135,10 +136,11 @@ def _candidates(
 ) -> list[_Candidate]:
     effort = _effort(len(film))
     nm = _starts(task, film, effort.starts, generator)
-    refined = least_squares(thin, nm, film=film, limits=task.limits)
+    quick = thin.with_goal(thin.goal.rough)
+    refined = least_squares(quick, nm, film=film, limits=task.limits)
     merit = _merit(task, thin, film, generator)
     tops = _distinct(_scored(film, refined, merit(refined)), most=effort.keep)
-    by_margin = _scored(film, refined, thin.margin(refined, film=film))
+    by_margin = _scored(film, refined, quick.margin(refined, film=film))
     flattest = [
         minimax(task.model, c.nm, film=film, limits=task.limits)
         for c in _distinct(by_margin, most=max(effort.keep // 2, 1))
@@ -177,7 +179,7 @@ def _merit(
     draws = draw_mirrored(task.errors, film=rows, count=48, generator=generator)
     smooth = SmoothYield(model, film, draws)
     tau = 0.2 * float(model.goal.width.min())
-    return lambda nm: np.array([smooth.merit(row, tau=tau) for row in nm])
+    return lambda nm: np.array([smooth.near(row).merit(row, tau=tau) for row in nm])
 
 
 def _by_margin(task: Task, candidate: _Candidate) -> _Candidate | None:
@@ -188,7 +190,7 @@ def _by_margin(task: Task, candidate: _Candidate) -> _Candidate | None:
         return task.model.margin(stacks, film=film)
 
     flattest = minimax(task.model, candidate.nm, film=film, limits=limits)
-    nm = best_ordered(flattest, film=film, limits=limits, score=score)
+    nm = best_ordered(flattest, film=film, limits=limits, score=score, breadth=BREADTH)
     return None if nm is None else _Candidate(film, nm, float(score(nm[None])[0]))
 
 
@@ -200,11 +202,12 @@ def _by_yield(
     draws = draw_mirrored(
         task.errors, film=thin.frame.film(film), count=_effort(len(film)).draws, generator=generator
     )
-    smooth = SmoothYield(thin, film, draws)
+    smooth = SmoothYield(thin, film, draws).near(candidate.nm)
     if (smooth.slack(candidate.nm) < 0.0).all() and candidate.score < 0.0:
         nm = minimax(task.model, candidate.nm, film=film, limits=task.limits)
     else:
         nm = climb(smooth, candidate.nm, limits=task.limits)
+    smooth = smooth.near(nm)
     return _Candidate(film, nm, smooth.merit(nm, tau=0.05 * slack_scale(smooth, nm)))
 
 
@@ -220,10 +223,11 @@ def _ordered_by_yield(
         count=_effort(len(film)).fine_draws,
         generator=generator,
     )
-    smooth = SmoothYield(thin, film, draws)
+    smooth = SmoothYield(thin, film, draws).near(candidate.nm)
     if not (smooth.slack(candidate.nm) >= 0.0).any():
         return _by_margin(task, candidate)
     finest = climb(smooth, candidate.nm, limits=limits, stages=FINE_STAGES)
+    smooth = smooth.near(finest)
     tau = FINE_STAGES[-1] * slack_scale(smooth, finest)
 
     def score(stacks: FloatArray) -> FloatArray:

@@ -13,9 +13,11 @@ from math import ceil
 import numpy as np
 from numpy.typing import NDArray
 
-from coatings.facets import FloatArray, IntArray, facet_scene
-from coatings.optics import Scene, reflectance, response
-from coatings.recipe import Facet, FacetName, Recipe, Window
+from coatings.facets import FloatArray, IntArray, light_on, window_views
+from coatings.optics import Scene
+from coatings.optics.light import Light, joined
+from coatings.optics.nearby import near, rough
+from coatings.recipe import FacetName, Recipe, Window
 
 GRID_STEP_NM = 1.0
 LEAST_WIDTH = 1e-6  # reflectance; finer than any facet is made or measured
@@ -72,13 +74,13 @@ class Constraints:
 
 @dataclass(frozen=True)
 class Goal:
-    """What a facet must do: a scene of P points and the bounds that hold there.
+    """What a facet must do: a light at P points and the bounds that hold there.
 
     ``low``, ``high``, ``absorption_high`` (P,) reflectance and absorptance bounds; ``window`` (P,) the
     number of the window that a point belongs to.
     """
 
-    scene: Scene
+    light: Light
     films: tuple[str, ...]
     low: FloatArray
     high: FloatArray
@@ -86,21 +88,27 @@ class Goal:
     window: IntArray
     constraints: Constraints
 
+    @property
+    def scene(self) -> Scene:
+        """The plane wave's scene at the same points."""
+        return self.light.plane
+
+    def near(self, nm: FloatArray, *, film: IntArray) -> Goal:
+        """The same goal with a light that is quick near one stack: ``nm`` (L,) [nm], ``film`` (L,) rows, every
+        layer counted."""
+        return replace(self, light=near(self.light, nm, film=film))
+
+    @property
+    def rough(self) -> Goal:
+        """The same goal with a light that is quick for many stacks at once."""
+        return replace(self, light=rough(self.light))
+
     def at(self, points: IntArray) -> Goal:
         """The same goal on a selection of its points, in the order given."""
-        scene = self.scene
         low, high = self.low[points], self.high[points]
         absorption_high = self.absorption_high[points]
         return Goal(
-            scene=replace(
-                scene,
-                wavelength_nm=scene.wavelength_nm[points],
-                incident=scene.incident[points],
-                outside=scene.outside[points],
-                films=scene.films[:, points],
-                q=None if scene.q is None else scene.q[points],
-                tm=np.asarray(scene.tm)[points],
-            ),
+            light=self.light.at(points),
             films=self.films,
             low=low,
             high=high,
@@ -123,9 +131,10 @@ class Goal:
         """
         shifts = {"film_shift": film_shift, "incident_shift": incident_shift}
         if not self.constraints.on_absorption:
-            return self.constraints.slack(reflectance(self.scene, nm, film=film, **shifts), None)
-        light = response(self.scene, nm, film=film, **shifts)
-        return self.constraints.slack(light.R, light.A)
+            R = self.light.reflectance(nm, film=film, **shifts)
+            return self.constraints.slack(R, None)
+        found = self.light.shares(nm, film=film, **shifts)
+        return self.constraints.slack(found.R, found.A)
 
     def thinned(self, most: int) -> Goal:
         """At most ``most`` points a window, evenly spread, ends kept."""
@@ -165,27 +174,28 @@ class Goal:
 
 
 def facet_goal(recipe: Recipe, side: FacetName) -> Goal:
-    """Goal of a facet over all its windows, on the full grid.
+    """Goal of a facet over all its windows, on the full grid; both polarizations of a window that asks for
+    them.
 
     Parameters: ``recipe``; ``side`` "front" or "rear". The facet must have at least one window.
     """
     facet = recipe.facets[side]
-    grids = [window_grid_nm(window.band_nm) for window in facet.windows]
-    counts = [len(grid) for grid in grids]
-    limits = np.array([bounds(window) for window in facet.windows])
+    lights, counts, numbers = [], [], []
+    for number, window in enumerate(facet.windows):
+        grid = window_grid_nm(window.band_nm)
+        for view in window_views(recipe, window):
+            lights.append(light_on(recipe, facet, wavelength_nm=grid, view=view))
+            counts.append(len(grid))
+            numbers.append(number)
+    limits = np.array([bounds(facet.windows[number]) for number in numbers])
     low, high, absorption_high = np.repeat(limits, counts, axis=0).T.copy()
     return Goal(
-        scene=facet_scene(
-            recipe,
-            facet,
-            wavelength_nm=np.concatenate(grids),
-            incident=_incident(recipe, facet, grids),
-        ),
+        light=joined(lights),
         films=facet.films,
         low=low,
         high=high,
         absorption_high=absorption_high,
-        window=np.repeat(np.arange(len(grids), dtype=np.intp), counts),
+        window=np.repeat(np.array(numbers, dtype=np.intp), counts),
         constraints=Constraints.of(low, high, absorption_high),
     )
 
@@ -196,10 +206,3 @@ def bounds(window: Window) -> tuple[float, float, float]:
     high = 1.0 if window.high is None else min(window.high, 1.0)
     absorption = 1.0 if window.absorption_at_most is None else window.absorption_at_most
     return low, high, absorption
-
-
-def _incident(recipe: Recipe, facet: Facet, grids: list[FloatArray]) -> FloatArray:
-    indices = [recipe.window_index(w, g) for w, g in zip(facet.windows, grids, strict=True)]
-    return np.concatenate(
-        [np.broadcast_to(i, g.shape) for i, g in zip(indices, grids, strict=True)]
-    )

@@ -55,7 +55,7 @@ def _unknown_k(recipe: Recipe, stacks: Mapping[FacetName, Stack | None]) -> Iter
 def _low_reflectance(recipe: Recipe, stacks: Mapping[FacetName, Stack | None]) -> Iterator[str]:
     for side in stacks:
         bounds = [w.high for w in recipe.facets[side].windows if w.high is not None]
-        if bounds and min(bounds) <= PLANE_WAVE_ENOUGH:
+        if recipe.chip.guide is None and bounds and min(bounds) <= PLANE_WAVE_ENOUGH:
             yield (
                 f"{side}: calculated for a plane wave; at so low a reflectance the guided mode's own "
                 "can differ by a large factor"

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from io import BytesIO
+from typing import TYPE_CHECKING
 
 import matplotlib as mpl
 import numpy as np
@@ -12,8 +13,6 @@ from matplotlib.backends.backend_agg import FigureCanvasAgg
 from matplotlib.figure import Figure
 from matplotlib.layout_engine import ConstrainedLayoutEngine
 
-from coatings.curve import FacetCurve
-from coatings.design.plan import FacetPlan
 from coatings.documents.look import INK, SIDE_COLOURS, STYLE, film_colours
 from coatings.documents.plots import (
     Band,
@@ -24,10 +23,14 @@ from coatings.documents.plots import (
     draw_yields,
 )
 from coatings.facets import stack_of
-from coatings.laser import PowerCurrent
-from coatings.recipe import FacetName, Recipe, Window
-from coatings.stack import Stack
-from materials import Material
+
+if TYPE_CHECKING:  # searching and laser models are slow to import, and curve needs neither
+    from coatings.curve import FacetCurve
+    from coatings.design.plan import FacetPlan
+    from coatings.laser import PowerCurrent
+    from coatings.recipe import FacetName, Recipe, Window
+    from coatings.stack import Stack
+    from materials import Material
 
 
 def spectrum_picture(

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 import numpy as np
 from matplotlib.axes import Axes
@@ -13,11 +14,13 @@ from matplotlib.lines import Line2D
 from matplotlib.patches import Rectangle
 from matplotlib.ticker import MaxNLocator
 
-from coatings.design.plan import FacetPlan
 from coatings.documents.look import CHIP, GATE, INK, QUIET, SIDE_COLOURS
-from coatings.facets import FacetSpectrum, FloatArray
-from coatings.laser import PowerCurrent
-from coatings.recipe import FacetName, Window
+
+if TYPE_CHECKING:  # searching and laser models are slow to import, and curve needs neither
+    from coatings.design.plan import FacetPlan
+    from coatings.facets import FacetSpectrum, FloatArray
+    from coatings.laser import PowerCurrent
+    from coatings.recipe import FacetName, Window
 
 NARROWEST_WRITTEN, NARROWEST_UPRIGHT = 0.007, 0.06  # shares of the drawn width
 

@@ -4,17 +4,19 @@ from __future__ import annotations
 
 import json
 from collections.abc import Mapping, Sequence
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from coatings import __version__
-from coatings.curve import FacetCurve
-from coatings.design.plan import FacetPlan
-from coatings.design.search import Found
 from coatings.documents.notes import material_sources, result_notes
-from coatings.facets import FloatArray
-from coatings.laser import Judgement, LaserEstimate
-from coatings.recipe import FacetName, Recipe
-from coatings.stack import Stack
+
+if TYPE_CHECKING:  # searching and laser models are slow to import, and curve needs neither
+    from coatings.curve import FacetCurve
+    from coatings.design.plan import FacetPlan
+    from coatings.design.search import Found
+    from coatings.facets import FloatArray
+    from coatings.laser import Judgement, LaserEstimate
+    from coatings.recipe import FacetName, Recipe
+    from coatings.stack import Stack
 
 TOOL = "facetwright"
 
@@ -48,6 +50,7 @@ def curve_result(
 def evidence(
     recipe: Recipe, stacks: Mapping[FacetName, Stack | None], *more: str
 ) -> dict[str, Json | list[Any]]:
+    """What a result rests on: notes, ``more`` of them by the models, and the sources of its materials."""
     return {
         "notes": [*result_notes(recipe, stacks), *more],
         "materials": material_sources(recipe, stacks),

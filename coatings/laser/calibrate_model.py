@@ -17,7 +17,7 @@ to the covariance exactly as (a_i/rho, 0, 0, 1/rho) sigma_rho.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -26,8 +26,10 @@ from coatings.errors import InputError, Problem
 from coatings.laser.checks import FloatArray
 from coatings.laser.chip import GainLaw
 
-_ROUNDS = 60
-_SETTLED = 1e-13
+_ROUNDS = 40
+_SETTLED = 1e-9
+# Close to the least, steps too small to show in the sum of squares still better the parameters.
+_ROUND_OFF = 1.0 + 1e-12
 _HALVINGS = 30
 
 
@@ -53,8 +55,12 @@ class Points:
 
     def at(self, rows: NDArray[np.bool_]) -> Points:
         """The chips of a mask only."""
-        picked = (part[rows] for part in (self.length_cm, self.efficiency, self.density))
-        return Points(*picked, self.rho, self.rho_sigma, self.law)
+        return replace(
+            self,
+            length_cm=self.length_cm[rows],
+            efficiency=self.efficiency[rows],
+            density=self.density[rows],
+        )
 
 
 @dataclass(frozen=True)
@@ -86,7 +92,8 @@ class Fitted:
         # Never below what one of the scatters has; without scatter (or nothing but R) it is exact.
         degrees = np.full(4, np.inf)
         np.divide(self.dof * total**2, estimated, out=degrees, where=estimated > 0.0)
-        return np.maximum(degrees, self.dof)
+        at_least: FloatArray = np.maximum(degrees, self.dof)
+        return at_least
 
 
 def straight_lines(points: Points) -> Fitted:
@@ -246,16 +253,16 @@ def _descend(points: Points, p: FloatArray) -> FloatArray:
     for _ in range(_ROUNDS):
         slopes = np.concatenate(derivatives(points, p))
         step = np.linalg.lstsq(slopes, np.concatenate(residuals(points, p)), rcond=None)[0]
+        if np.max(np.abs(step)) <= _SETTLED * (1.0 + np.max(np.abs(p))):
+            return p + step
         for _ in range(_HALVINGS):
             now = squares(p + step)
-            if now <= least:
+            if now <= least * _ROUND_OFF:
                 break
             step = 0.5 * step
         else:
             return p
         p, least = p + step, now
-        if np.max(np.abs(step)) <= _SETTLED * (1.0 + np.max(np.abs(p))):
-            return p
     return p
 
 

@@ -13,7 +13,7 @@ from coatings.errors import InputError
 from coatings.laser.calibrate_model import Fitted, Points, derivatives, joint_fit, residuals
 from coatings.laser.checks import FloatArray
 
-_FALSE_ALARM = 0.01
+_FALSE_ALARM = 0.005
 _MOST_OUTLIERS = 0.2
 # Below this a deviation is no matter, however small the others' scatter: digits of the file.
 _LEAST_DEVIATION = 1e-3
@@ -56,7 +56,7 @@ def length_groups(length_cm: FloatArray) -> NDArray[np.intp]:
 
 
 def find_outliers(points: Points) -> tuple[Outlier, ...]:
-    """Outlying chips by the generalised extreme deviate test, false alarm 1 % a set of chips.
+    """Outlying chips by the generalised extreme deviate test, false alarm 0.5 % a set of chips.
 
     The worst chip is put aside, the rest fitted anew, up to a fifth of the chips; every one put
     aside up to the last that fails its test is an outlier. Going on past a chip that passes is
@@ -153,7 +153,7 @@ class LeftOut:
 
     ``length_um`` mean of the chips left out, ``chips`` how many; ``parameters`` p without them
     (a_i, eta_i, Jtr, G0 in their units); ``shift_sigmas`` how far each moved over the standard
-    error of such a move; ``matters`` where one moved further than chance allows (1 % for all).
+    error of such a move; ``matters`` where one moved further than chance allows (0.5 % for all).
     """
 
     length_um: float

@@ -166,7 +166,7 @@ def modes(guide: Guide, *, tm: bool) -> tuple[GuidedMode, ...]:
     Returns
     -------
     tuple of GuidedMode
-        Order 0, 1, ...; for one wavelength these are all its bound modes.
+        Order 0, 1, ...; for one wavelength these are all its bound modes, next to cut-off too.
 
     Raises
     ------
@@ -202,7 +202,8 @@ def _mode(guide: Guide, *, tm: bool, order: int) -> GuidedMode:
     solve(eps, length, order, tm, square, phi, v, state)
     check_states(guide, state, "TM" if tm else "TE")
     mode = GuidedMode(guide, tm, order, np.sqrt(square), phi, v)
-    check_tails(mode)
+    if order == 0:
+        check_tails(mode)
     return mode
 
 

@@ -75,7 +75,8 @@ def check_states(guide: Guide, state: Integers, name: str) -> None:
 
 def _why_absent(guide: Guide, absent: NDArray[np.bool_], name: str) -> str:
     place = int(np.argmax(absent))
-    nm, n = guide.wavelength_nm[place], guide.index[:, place].real
+    nm = guide.wavelength_nm[place]
+    n = np.sqrt(np.maximum((guide.index[:, place] ** 2).real, 0.0))
     inner, outer = n[1:-1].max(), max(n[0], n[-1])
     if inner <= outer:
         why = f"no layer within (largest index {inner:.6g}) is above the outer ones ({outer:.6g})"

@@ -1,8 +1,8 @@
 """What a facet does to the chip's light, whichever model holds: one face for design, curves and laser.
 
 A *light* answers for P points (wavelengths) and many stacks at once. `PlaneLight` is the plane wave at
-the modal index, `ModalLight` the guided mode, `LateralLight` a stripe tilted in the junction plane,
-`JointLight` several of them side by side, for windows that see the facet in different ways.
+the modal index, `ModeLight` what returns into a guided or a tilted mode, `JointLight` several of them side
+by side, for windows that see the facet in different ways.
 """
 
 from __future__ import annotations
@@ -20,6 +20,7 @@ from coatings.optics.gradients import gradient, weighted_gradient
 from coatings.optics.guide import fundamental
 from coatings.optics.scene import Scene
 from coatings.optics.spectrum import reflectance, response
+from coatings.optics.tilt import TiltedFacet, lateral_overlap
 
 Share = Literal["R", "A"]
 
@@ -108,11 +109,26 @@ class PlaneLight:
 
 
 @dataclass(frozen=True, eq=False)
-class ModalLight:
-    """The guided mode. Derivatives of A are those of the plane wave: a direction to search in."""
+class ModeLight:
+    """What returns into a mode. Derivatives of A are those of the plane wave: a direction to search in."""
 
-    facet: ModalFacet
-    model: str = "modal"
+    facet: ModalFacet | TiltedFacet
+
+    @property
+    def model(self) -> str:
+        """Name of the model."""
+        return "modal" if isinstance(self.facet, ModalFacet) else "tilted"
+
+    @property
+    def scale(self) -> Reals:
+        """Share (P,) of the plane wave's amplitude that the mode takes back to first order: one, or the
+        overlap of a tilted mode with its image by an ideal mirror."""
+        facet = self.facet
+        if isinstance(facet, ModalFacet) or facet.lateral_um is None:
+            return np.ones(self.plane.points)
+        plane = facet.plane
+        tilt: dict[str, float] = {"tilt_deg": facet.tilt_deg, "lateral_um": facet.lateral_um}
+        return lateral_overlap(plane.wavelength_nm, plane.incident, **tilt)
 
     @property
     def plane(self) -> Scene:
@@ -144,19 +160,27 @@ class ModalLight:
             nm, film=film, weight=weight, of=of, **shifts
         )
 
-    def at(self, points: Integers) -> ModalLight:
-        """The same facet at a selection of its points; the mode is solved anew there."""
-        here, guide = self.facet, self.facet.mode.guide
-        part = replace(
-            guide,
-            wavelength_nm=guide.wavelength_nm[points],
-            index=guide.index[:, points],
-            slope_per_nm=None if guide.slope_per_nm is None else guide.slope_per_nm[:, points],
-        )
-        mode = fundamental(part, tm=here.mode.tm)
-        return ModalLight(
-            ModalFacet(mode, here.outside[points], here.films[:, points], here.fine), self.model
-        )
+    def at(self, points: Integers) -> ModeLight:
+        """The same facet at a selection of its points; a guided mode is solved anew there."""
+        here = self.facet
+        if isinstance(here, ModalFacet):
+            return ModeLight(modal_facet_at(here, points))
+        modal = None if here.modal is None else modal_facet_at(here.modal, points)
+        plane = scene_at(here.plane, points)
+        return ModeLight(TiltedFacet(plane, here.tilt_deg, here.lateral_um, modal))
+
+
+def modal_facet_at(facet: ModalFacet, points: Integers) -> ModalFacet:
+    """A guided mode's facet at a selection of its wavelengths."""
+    guide = facet.mode.guide
+    part = replace(
+        guide,
+        wavelength_nm=guide.wavelength_nm[points],
+        index=guide.index[:, points],
+        slope_per_nm=None if guide.slope_per_nm is None else guide.slope_per_nm[:, points],
+    )
+    mode = fundamental(part, tm=facet.mode.tm)
+    return ModalFacet(mode, facet.outside[points], facet.films[:, points], facet.fine)
 
 
 @dataclass(frozen=True, eq=False)

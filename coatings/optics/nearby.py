@@ -3,10 +3,11 @@
 The guided mode's amplitude differs from the plane wave's by an amount that changes slowly from stack to
 stack. Near an ordered stack d0
 
-    r(d, N) = r_plane(d, N) + gap + sum_l by_nm_l (d_l - d0_l) + sum_m by_film_m dN_m + by_incident dn
+    r(d, N) = scale r_plane(d, N) + gap + sum_l by_nm_l (d_l - d0_l) + sum_m by_film_m dN_m + by_incident dn
 
-is exact to first order in every error of a run, and has the plane wave's curvature. gap and by_nm come
-from exact values and derivatives at d0; by_film and by_incident from central differences.
+is exact to first order in every error of a run, and has the plane wave's curvature. The scale is 1, for a
+tilted stripe its lateral overlap. gap and by_nm come from exact values and derivatives at d0, by_film and
+by_incident from central differences.
 """
 
 from __future__ import annotations
@@ -19,7 +20,15 @@ from numpy.typing import NDArray
 
 from coatings.optics.arrays import Complexes, Integers, Reals
 from coatings.optics.gradients import amplitude_gradient
-from coatings.optics.light import FacetShares, ModalLight, PlaneLight, Share
+from coatings.optics.light import (
+    FacetShares,
+    JointLight,
+    Light,
+    ModeLight,
+    PlaneLight,
+    Share,
+    scene_at,
+)
 from coatings.optics.scene import Scene
 from coatings.optics.spectrum import reflection
 
@@ -34,8 +43,9 @@ class NearbyLight:
     the plane wave's, and its slopes. T, A and S are not told apart: ``exact`` is asked for them.
     """
 
-    exact: ModalLight
+    exact: ModeLight
     scene: Scene
+    scale: Reals
     film: Integers
     nm: Reals
     gap: Complexes
@@ -59,7 +69,7 @@ class NearbyLight:
 
     def reflectance(self, nm: Reals, *, film: Integers, **shifts: Any) -> Reals:
         """R (S, P) of stacks ``nm`` (S, L) [nm] of the same films as the stack here."""
-        r = reflection(self.scene, nm, film=film, **shifts) + self._gap(nm, **shifts)
+        r = self.scale * reflection(self.scene, nm, film=film, **shifts) + self._gap(nm, **shifts)
         return squared(r)
 
     def gradient(self, nm: Reals, *, film: Integers, of: Share = "R") -> tuple[Reals, Reals]:
@@ -74,8 +84,12 @@ class NearbyLight:
         """Sum over points of weight (S, P) times the derivative by thickness, (S, L) [1/nm]."""
         if of != "R":
             return self.exact.weighted_gradient(nm, film=film, weight=weight, of=of, **shifts)
-        slope = self._gradient(nm, film, **shifts)[1]
-        total: Reals = np.einsum("sp,spl->sl", weight, slope)
+        total = np.zeros_like(nm)
+        for point in np.flatnonzero(weight.any(axis=0)):  # a search weighs few points of each chip
+            rows = np.flatnonzero(weight[:, point])
+            part = {name: values[rows] for name, values in shifts.items() if values is not None}
+            slope = self.at(np.array([point]))._gradient(nm[rows], film, **part)[1]
+            total[rows] += weight[rows, point, None] * slope[:, 0]
         return total
 
     def at(self, points: Integers) -> NearbyLight:
@@ -83,7 +97,8 @@ class NearbyLight:
         return replace(
             self,
             exact=_Later(self.exact, points),
-            scene=PlaneLight(self.scene).at(points).scene,
+            scene=scene_at(self.scene, points),
+            scale=self.scale[points],
             gap=self.gap[points],
             by_nm=self.by_nm[points],
             by_film=self.by_film[points],
@@ -91,28 +106,85 @@ class NearbyLight:
         )
 
     def _gap(
-        self, nm: Reals, *, film_shift: Any = None, incident_shift: Any = None
+        self, nm: Reals, *, film_shift: Reals | None = None, incident_shift: Reals | None = None
     ) -> Complexes:
-        gap: Complexes = self.gap + (nm - self.nm) @ self.by_nm.T
+        """Amplitude (S, P) by which the mode differs from the plane wave; one real product does it."""
+        films = len(self.scene.films)
+        off = np.zeros((len(nm), nm.shape[1] + films + 1))
+        off[:, : nm.shape[1]] = nm - self.nm
         if film_shift is not None:
-            gap = gap + np.asarray(film_shift) @ self.by_film.T
+            off[:, nm.shape[1] : -1] = film_shift
         if incident_shift is not None:
-            gap = gap + np.asarray(incident_shift)[:, None] * self.by_incident
+            off[:, -1] = incident_shift
+        slopes = np.ascontiguousarray(
+            np.vstack([self.by_nm.T, self.by_film.T, self.by_incident[None]])
+        )
+        gap = np.ascontiguousarray(off @ slopes.view(np.float64)).view(np.complex128)
+        gap += self.gap
         return gap
 
     def _gradient(self, nm: Reals, film: Integers, **shifts: Any) -> tuple[Reals, Reals]:
         r, slope = amplitude_gradient(self.scene, nm, film=film, **shifts)
-        r = r + self._gap(nm, **shifts)
-        return squared(r), 2.0 * (r.conj()[:, :, None] * (slope + self.by_nm)).real
+        r = self.scale * r + self._gap(nm, **shifts)
+        slope = self.scale[:, None] * slope + self.by_nm
+        return squared(r), 2.0 * (r.conj()[:, :, None] * slope).real
 
 
-class _Later(ModalLight):
-    """A selection of a guided mode's points that is solved when something is asked of it."""
+@dataclass(frozen=True, eq=False)
+class RoughLight:
+    """A tilted mode as its lateral overlap times the plane wave: where many stacks are compared at once."""
 
-    def __init__(self, whole: ModalLight, points: Integers) -> None:
+    exact: ModeLight
+    scene: Scene
+    square: Reals
+
+    @property
+    def model(self) -> str:
+        """The exact light's model."""
+        return self.exact.model
+
+    @property
+    def plane(self) -> Scene:
+        """The plane wave's scene."""
+        return self.scene
+
+    def shares(self, nm: Reals, *, film: Integers, **shifts: Any) -> FacetShares:
+        """r, R, T, A, S of stacks, by the exact light."""
+        return self.exact.shares(nm, film=film, **shifts)
+
+    def reflectance(self, nm: Reals, *, film: Integers, **shifts: Any) -> Reals:
+        """R (S, P) of stacks ``nm`` (S, L) [nm]."""
+        return self.square * PlaneLight(self.scene).reflectance(nm, film=film, **shifts)
+
+    def gradient(self, nm: Reals, *, film: Integers, of: Share = "R") -> tuple[Reals, Reals]:
+        """R (S, P) and its derivative (S, P, L) [1/nm]; A by the exact light."""
+        if of != "R":
+            return self.exact.gradient(nm, film=film, of=of)
+        R, slope = PlaneLight(self.scene).gradient(nm, film=film)
+        return self.square * R, self.square[:, None] * slope
+
+    def weighted_gradient(
+        self, nm: Reals, *, film: Integers, weight: Reals, of: Share = "R", **shifts: Any
+    ) -> Reals:
+        """Sum over points of weight (S, P) times the derivative by thickness, (S, L) [1/nm]."""
+        square = self.square if of == "R" else np.ones(len(self.square))
+        return PlaneLight(self.scene).weighted_gradient(
+            nm, film=film, weight=weight * square, of=of, **shifts
+        )
+
+    def at(self, points: Integers) -> RoughLight:
+        """The same at a selection of the points."""
+        return RoughLight(
+            _Later(self.exact, points), scene_at(self.scene, points), self.square[points]
+        )
+
+
+class _Later(ModeLight):
+    """A selection of a mode's points that is worked out when something is asked of it."""
+
+    def __init__(self, whole: ModeLight, points: Integers) -> None:
         object.__setattr__(self, "_whole", whole)
         object.__setattr__(self, "_points", points)
-        object.__setattr__(self, "model", whole.model)
 
     def __getattr__(self, name: str) -> Any:
         if name != "facet":
@@ -121,19 +193,19 @@ class _Later(ModalLight):
         return self.facet
 
 
-def nearby(light: ModalLight, nm: Reals, *, film: Integers) -> NearbyLight:
+def nearby(light: ModeLight, nm: Reals, *, film: Integers) -> NearbyLight:
     """The light near a stack: ``nm`` (L,) [nm], ``film`` (L,) rows, every layer counted.
 
     One exact gradient and two evaluations for each film and for the chip.
     """
-    scene = light.plane
+    scene, scale = light.plane, light.scale
     here = nm[None]
     r, slope = light.facet.amplitude_gradient(here, film=film)
     plane_r, plane_slope = amplitude_gradient(scene, here, film=film)
     films, shifts = len(scene.films), _probes(len(scene.films))
     many = np.repeat(here, len(shifts), axis=0)
     probe = {"film_shift": shifts[:, :films], "incident_shift": shifts[:, films]}
-    gap = light.facet.reflection(many, film=film, **probe) - reflection(
+    gap = light.facet.reflection(many, film=film, **probe) - scale * reflection(
         scene, many, film=film, **probe
     )
     half = len(shifts) // 2
@@ -141,13 +213,32 @@ def nearby(light: ModalLight, nm: Reals, *, film: Integers) -> NearbyLight:
     return NearbyLight(
         exact=light,
         scene=scene,
+        scale=scale,
         film=film,
         nm=nm,
-        gap=(r - plane_r)[0],
-        by_nm=(slope - plane_slope)[0],
+        gap=(r - scale * plane_r)[0],
+        by_nm=(slope - scale[:, None] * plane_slope)[0],
         by_film=np.ascontiguousarray(slopes[:films].T),
         by_incident=slopes[films],
     )
+
+
+def near(light: Light, nm: Reals, *, film: Integers) -> Light:
+    """A light that is quick near one stack and exact there to first order; a plane wave is itself."""
+    if isinstance(light, JointLight):
+        return JointLight(tuple(near(part, nm, film=film) for part in light.parts))
+    if isinstance(light, NearbyLight | RoughLight):
+        return near(light.exact, nm, film=film)
+    return nearby(light, nm, film=film) if isinstance(light, ModeLight) else light
+
+
+def rough(light: Light) -> Light:
+    """A light for comparing many stacks: a tilted mode is simplified, all else is itself."""
+    if isinstance(light, JointLight):
+        return JointLight(tuple(rough(part) for part in light.parts))
+    if isinstance(light, ModeLight) and light.model == "tilted":
+        return RoughLight(light, light.plane, light.scale**2)
+    return light
 
 
 def _probes(films: int) -> Reals:

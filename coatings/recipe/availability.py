@@ -24,16 +24,6 @@ class Row:
     commands: frozenset[str]
 
 
-def _guide(recipe: Recipe) -> Iterator[KeyPath]:
-    if recipe.chip.guide is not None:
-        yield _CHIP / "guide"
-
-
-def _tilt(recipe: Recipe) -> Iterator[KeyPath]:
-    if recipe.chip.tilt_deg > 0.0:
-        yield _CHIP / "tilt_deg"
-
-
 def _trade(recipe: Recipe) -> Iterator[KeyPath]:
     for name, facet in recipe.facets.items():
         for place, window in enumerate(facet.windows):
@@ -65,11 +55,7 @@ def _gain_peak(recipe: Recipe) -> Iterator[KeyPath]:
 _PLAN = frozenset({"plan"})
 _LIGHT = frozenset({"plan", "curve", "field"})
 
-# Window polarization and of = "coating" need no rows of their own: they differ from the chip's
-# plane wave at normal incidence only with a guide or a tilt, and those are refused.
 ROWS: tuple[Row, ...] = (
-    Row("the reflectivity of a guided mode", _guide, _LIGHT),
-    Row("a stripe that is tilted to the facet", _tilt, _LIGHT),
     Row('a window that takes "trade" as its target', _trade, _LIGHT),
     Row("feedback from an external reflector", _external, _PLAN),
     Row("the shift of a film's index in air", _air_shift, _PLAN),

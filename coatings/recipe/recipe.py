@@ -140,7 +140,21 @@ class Recipe:
         """
         if window.index is None:
             return self.chip_index(wavelength_nm)
-        return self._tilted(window.index, wavelength_nm)
+        return self.sister_index(window.index, wavelength_nm)
+
+    def sister_index(self, index: float, wavelength_nm: ArrayLike) -> NDArray[np.float64]:
+        """Modal index over wavelength of a chip that has ``index`` at the wavelength of operation.
+
+        Parameters
+        ----------
+        index : modal index at chip.wavelength_nm
+        wavelength_nm : vacuum wavelengths [nm], any shape
+
+        Returns
+        -------
+        ndarray of float, of the wavelengths' shape
+        """
+        return self._tilted(index, wavelength_nm)
 
     def _tilted(self, index: float, wavelength_nm: ArrayLike) -> NDArray[np.float64]:
         wavelength = np.asarray(wavelength_nm, dtype=float)

@@ -104,10 +104,14 @@ def best_of_order(problem: DesignProblem, names: tuple[str, ...], seed: int) -> 
     twin = Twin.of(problem.recipe, names, step_nm=max(widest / 14, 1.0))
     fails = any(problem.recipe.process_for("front").index.values()) or THICKNESS(problem)
     limits = [facet.layer_limits_nm(name) for name in names]
-    coarse = Objective(twin, twin.chips(runs=512, seed=seed) if fails else None, 0.1 * half_width(problem))
+    coarse = Objective(
+        twin, twin.chips(runs=512, seed=seed) if fails else None, 0.1 * half_width(problem)
+    )
     fine_grid = Twin.of(problem.recipe, names, step_nm=2.0 if fails else 1.0)
     fine = Objective(
-        fine_grid, fine_grid.chips(runs=4096, seed=seed + 9) if fails else None, 0.03 * half_width(problem)
+        fine_grid,
+        fine_grid.chips(runs=4096, seed=seed + 9) if fails else None,
+        0.03 * half_width(problem),
     )
     total = facet.total_nm or np.inf
 
@@ -115,12 +119,23 @@ def best_of_order(problem: DesignProblem, names: tuple[str, ...], seed: int) -> 
         return lambda nm: score(nm) + 10.0 * max(nm.sum() / total - 1.0, 0.0)
 
     found = differential_evolution(
-        fined(coarse), limits, rng=seed, popsize=18, maxiter=70 + 60 * len(names), tol=1e-7,
-        polish=False, init="sobol", mutation=(0.4, 0.9), recombination=0.8,
+        fined(coarse),
+        limits,
+        rng=seed,
+        popsize=18,
+        maxiter=70 + 60 * len(names),
+        tol=1e-7,
+        polish=False,
+        init="sobol",
+        mutation=(0.4, 0.9),
+        recombination=0.8,
     )
     low, high = np.array(limits).T
     best = minimize(
-        fined(fine), found.x, method="Nelder-Mead", bounds=limits,
+        fined(fine),
+        found.x,
+        method="Nelder-Mead",
+        bounds=limits,
         options={"maxiter": (120 if fails else 600) * len(names), "xatol": 1e-3, "fatol": 1e-7},
     )
     nm = np.clip(best.x, low, high)
@@ -164,7 +179,9 @@ def main(names: list[str]) -> None:
         for count in PROBLEMS[name].counts:
             start = time.perf_counter()
             counts[str(count)] = best_known(PROBLEMS[name], count)
-            print(name, count, counts[str(count)], f"{time.perf_counter() - start:.0f} s", flush=True)
+            print(
+                name, count, counts[str(count)], f"{time.perf_counter() - start:.0f} s", flush=True
+            )
             STORE.write_text(json.dumps(store, indent=1) + "\n")
 
 

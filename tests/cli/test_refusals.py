@@ -26,7 +26,7 @@ BAD_RECIPES = {
     "negative": (changed("= 2000.0", "= -1.0"), "chip.length_um"),
     "zero": (changed("= 2000.0", "= 0.0"), "chip.length_um"),
     "reversed band": (changed("[975.0, 985.0]", "[985.0, 975.0]"), "reversed"),
-    "unknown material": (changed('["Al2O3"]', '["Al203"]'), 'did you mean "Al2O3"?'),
+    "unknown material": (changed('["Al2O3"]', '["Al203"]'), "did you mean 'Al2O3'?"),
     "unknown polarization": (changed('"TE"', '"TX"'), "chip.polarization"),
     "window without target": (changed("at_most = 0.06", ""), "has no target"),
     "window with two targets": (
@@ -43,7 +43,7 @@ BAD_RECIPES = {
         "between 0 and 1",
     ),
     "wavelength outside a table": (
-        changed("[975.0, 985.0]", "[975.0, 1985.0]"),
+        changed("[975.0, 985.0]", "[100.0, 985.0]"),
         "is known over",
     ),
     "table that leaves the folder": (TEXT + TABLE.format('"../x.csv"'), "leaves the recipe's folder"),

@@ -78,7 +78,5 @@ def recipe(
     side: str = "front",
 ) -> Recipe:
     """`recipe_text` read; without ``process`` every error is zero."""
-    text = recipe_text(
-        facet, *windows, process=process, chip=chip, materials=materials, side=side
-    )
+    text = recipe_text(facet, *windows, process=process, chip=chip, materials=materials, side=side)
     return parse_recipe(text, path=Path("recipes/x.toml"))

@@ -102,7 +102,9 @@ class Twin:
         rows = len(nm)
         return np.hstack([np.tile(base, (rows, 1)), nm, np.tile(cap, (rows, 1))])
 
-    def slack(self, every_nm: Reals, shift: Reals | None = None, chip: Reals | None = None) -> Reals:
+    def slack(
+        self, every_nm: Reals, shift: Reals | None = None, chip: Reals | None = None
+    ) -> Reals:
         """Least distance (S,) inside all windows of stacks with every layer given."""
         least = np.full(len(every_nm), np.inf)
         facet = self.recipe.facets[self.side]
@@ -152,9 +154,7 @@ class Twin:
     def chips(self, *, runs: int, chips: int = 1, seed: int = 0) -> Chips:
         """Drawn chips of this facet."""
         films = len(self.recipe.facets[self.side].films)
-        return draw(
-            len(self.names), films, runs=runs, chips=chips, rng=np.random.default_rng(seed)
-        )
+        return draw(len(self.names), films, runs=runs, chips=chips, rng=np.random.default_rng(seed))
 
     def inside(self, nm: Reals, chips: Chips, *, piece: int = 4000) -> NDArray[np.bool_]:
         """Which drawn chips (S,) of one ordered stack (L,) are inside every window."""

@@ -86,7 +86,9 @@ def test_many_orders_hold_those_of_two_films_in_turn():
 
 
 def test_an_order_that_no_total_can_hold_is_left_out():
-    limits = limits_of(layer_nm={"L": [20.0, 90.0], "H": [50.0, 90.0]}, total_nm=100.0, max_layers=3)
+    limits = limits_of(
+        layer_nm={"L": [20.0, 90.0], "H": [50.0, 90.0]}, total_nm=100.0, max_layers=3
+    )
     rng = np.random.default_rng(0)
     assert [o.tolist() for o in limits.orders(1, rng)] == [[0], [1]]
     assert [o.tolist() for o in limits.orders(3, rng)] == [[0, 1, 0]]

@@ -79,7 +79,9 @@ def test_the_two_layer_family_holds_the_v_coat():
     n1 lies next to n0.
     """
     n0, n1, n2, ns, lam = 1.0, 1.45, 2.1, 3.3, 976.0
-    square1 = (ns - n0) * (n2**2 - n0 * ns) * n1**2 / ((n1**2 * ns - n0 * n2**2) * (n0 * ns - n1**2))
+    square1 = (
+        (ns - n0) * (n2**2 - n0 * ns) * n1**2 / ((n1**2 * ns - n0 * n2**2) * (n0 * ns - n1**2))
+    )
     product = n1 * n2 * (ns - n0) / (n1**2 * ns - n0 * n2**2)
     outer = np.arctan(np.sqrt(square1)) * lam / (2 * np.pi * n1)
     inner = np.arctan(product / np.sqrt(square1)) % np.pi * lam / (2 * np.pi * n2)
@@ -148,7 +150,11 @@ def test_a_long_stack_is_varied_at_its_ends_only():
 
 
 def test_random_starts_fill_what_the_run_can_hold():
-    facet = {"palette": ["L", "H"], "max_layers": 3, "layer_nm": {"L": [20.0, 600.0], "H": [30.0, 90.0]}}
+    facet = {
+        "palette": ["L", "H"],
+        "max_layers": 3,
+        "layer_nm": {"L": [20.0, 600.0], "H": [30.0, 90.0]},
+    }
     made = recipe(facet, {"at_most": 0.02})
     limits = run_limits(made, "front")
     nm = starts.random_thicknesses(

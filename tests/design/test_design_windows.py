@@ -25,7 +25,10 @@ CASES = {
     "absorptance alone": ([{"absorption_at_most": 0.02}], {}),
     "floor and absorptance": ([{"at_least": 0.3, "absorption_at_most": 0.02, **BAND}], {}),
     "point": ([{"at_most": 0.1, "band_nm": [976.0, 976.0]}], {}),
-    "far from the chip's band": ([{"at_most": 0.1}, {"at_least": 0.02, "band_nm": [500.0, 530.0]}], {}),
+    "far from the chip's band": (
+        [{"at_most": 0.1}, {"at_least": 0.02, "band_nm": [500.0, 530.0]}],
+        {},
+    ),
     "sister chip": ([{"at_most": 0.1}, {"at_most": 0.1, "index": 3.6}], {"group_index": 3.8}),
     "overlapping": ([{"at_most": 0.1}, {"at_least": 0.02, "band_nm": [970.0, 1100.0]}], {}),
 }

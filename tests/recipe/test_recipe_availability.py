@@ -10,11 +10,7 @@ from recipe_texts import front, laser, only, read, window, witness
 from coatings.errors import RecipeError
 from coatings.recipe import Recipe, check_available, unavailable
 
-GUIDE = "[chip.guide]\nlayers = [{ index = 3.2 }, { index = 3.4, um = 0.5 }, { index = 3.2 }]"
-
 ABSENT = {
-    "guide": (lambda: read(GUIDE, index=None), r"chip\.guide: ", {"plan", "curve"}),
-    "tilt": (lambda: read(tilt_deg="7", lateral_um="3.5"), r"chip\.tilt_deg: ", {"plan", "curve"}),
     "trade": (
         lambda: read(laser(), front(window(), only(reflectance='"trade"'))),
         r"front\.windows#2\.reflectance: ",
@@ -58,8 +54,12 @@ def test_absent_feature(case: str, command: str) -> None:
 
 
 def test_all_absent_features_at_once() -> None:
-    recipe = read("[external]\nreflectance = 0.05\ncoupling = 0.8", tilt_deg="7", lateral_um="3.5")
-    assert [str(path) for path, _ in unavailable(recipe, "plan")] == ["chip.tilt_deg", "external"]
+    recipe = read(
+        "[external]\nreflectance = 0.05\ncoupling = 0.8",
+        "[process]\nair_shift_percent = { Al2O3 = 0.5 }",
+    )
+    asked = [str(path) for path, _ in unavailable(recipe, "plan")]
+    assert asked == ["external", "process.air_shift_percent"]
 
 
 def test_keys_that_change_nothing_here() -> None:
