@@ -2,13 +2,13 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
 from coatings.design.model import FacetModel, facet_frame
 from coatings.design.windows import facet_goal
-from coatings.facets import FacetSpectrum, FloatArray, facet_spectrum, film_rows
+from coatings.facets import FacetSpectrum, FloatArray, View, chip_view, facet_spectrum, film_rows
 from coatings.grids import grid_nm
 from coatings.recipe import FacetName, Recipe, Window
 from coatings.stack import Stack
@@ -28,12 +28,24 @@ class WindowMargin:
 
 @dataclass(frozen=True)
 class FacetCurve:
-    """Spectrum of one facet and the margins of its windows; ``model`` names the model of the light."""
+    """Spectrum of one facet and the margins of its windows.
+
+    ``at_work`` is the facet at the wavelength of operation; ``others`` what the same stack is to other light
+    there, by name: "plane" the plane wave where the model is a richer one, "coating" the film alone at the
+    tilt angle. ``plane_spectrum`` is the plane wave's over the grid, None where that is the model.
+    """
 
     side: FacetName
     spectrum: FacetSpectrum
     windows: tuple[WindowMargin, ...]
-    model: str = "plane"
+    at_work: FacetSpectrum
+    others: dict[str, FacetSpectrum]
+    plane_spectrum: FacetSpectrum | None
+
+    @property
+    def model(self) -> str:
+        """Name of the model of the light."""
+        return self.spectrum.model
 
     @property
     def meets(self) -> bool:
@@ -47,26 +59,43 @@ def facet_curve(
     *,
     wavelength_nm: FloatArray | None = None,
     searched: Stack | None = None,
+    plane: bool = False,
 ) -> FacetCurve:
     """Curve of a facet over ``wavelength_nm`` (P,) [nm], by default its windows with a margin around.
 
-    ``searched`` stands in for the recipe's own searched layers.
+    ``searched`` stands in for the recipe's own searched layers; ``plane`` takes the plane wave at the modal
+    index even where the recipe has a guide or a tilt, for the windows too.
     """
-    facet = recipe.facets[side]
     grid = default_grid_nm(recipe, side) if wavelength_nm is None else wavelength_nm
+
+    def seen(where: FloatArray, view: View) -> FacetSpectrum:
+        return facet_spectrum(recipe, side, wavelength_nm=where, searched=searched, view=view)
+
+    own, flat = chip_view(recipe, plane=plane), chip_view(recipe, plane=True)
+    spectrum, at = seen(grid, own), np.array([recipe.chip.wavelength_nm])
+    others = {}
+    if spectrum.model != "plane":
+        others["plane"] = seen(at, flat)
+    if spectrum.model == "tilted":
+        others["coating"] = seen(at, replace(own, coating=True))
     return FacetCurve(
         side=side,
-        spectrum=facet_spectrum(recipe, side, wavelength_nm=grid, searched=searched),
-        windows=window_margins(recipe, side, searched) if facet.windows else (),
+        spectrum=spectrum,
+        windows=window_margins(recipe, side, searched, plane=plane),
+        at_work=seen(at, own),
+        others=others,
+        plane_spectrum=None if spectrum.model == "plane" else seen(grid, flat),
     )
 
 
 def window_margins(
-    recipe: Recipe, side: FacetName, searched: Stack | None = None
+    recipe: Recipe, side: FacetName, searched: Stack | None = None, *, plane: bool = False
 ) -> tuple[WindowMargin, ...]:
     """Margin of every window of a facet."""
     facet = recipe.facets[side]
-    goal = facet_goal(recipe, side)
+    if not facet.windows:
+        return ()
+    goal = facet_goal(recipe, side, plane=plane)
     own = Stack.of([e.material for e in facet.layers or ()], [e.nm for e in facet.layers or ()])
     stack = own if searched is None else searched
     model = FacetModel(goal, facet_frame(facet))
@@ -89,7 +118,9 @@ def default_grid_nm(recipe: Recipe, side: FacetName) -> FloatArray:
     bands = [recipe.chip.band_nm, *(window.band_nm for window in facet.windows)]
     low, high = min(band[0] for band in bands), max(band[1] for band in bands)
     around = max(0.2 * (high - low), 10.0)
-    names = [*facet.films, facet.outside, recipe.chip.index]
+    guide = recipe.chip.guide
+    chip = [recipe.chip.index] if guide is None else [layer.material for layer in guide.layers]
+    names = [*facet.films, facet.outside, *chip]
     ranges = [recipe.material(name).range_nm for name in names if isinstance(name, str)]
     least = max([low - around, *(r[0] for r in ranges)])
     most = min([high + around, *(r[1] for r in ranges)])

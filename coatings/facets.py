@@ -62,11 +62,11 @@ def chip_view(recipe: Recipe, *, plane: bool = False) -> View:
     return View(tm=recipe.chip.polarization == "TM", plane=plane)
 
 
-def window_views(recipe: Recipe, window: Window) -> tuple[View, ...]:
+def window_views(window: Window, *, plane: bool = False) -> tuple[View, ...]:
     """The lights that a window judges: one, or one a polarization."""
     kinds = {"TE": (False,), "TM": (True,), "both": (False, True)}[window.polarization]
     alone = window.of == "coating"
-    return tuple(View(tm=tm, index=window.index, coating=alone) for tm in kinds)
+    return tuple(View(tm=tm, plane=plane, index=window.index, coating=alone) for tm in kinds)
 
 
 def light_on(recipe: Recipe, facet: Facet, *, wavelength_nm: FloatArray, view: View) -> Light:
@@ -181,16 +181,14 @@ def facet_spectrum(
     *,
     wavelength_nm: FloatArray,
     searched: Stack | None = None,
-    plane: bool = False,
+    view: View | None = None,
 ) -> FacetSpectrum:
     """Spectrum of a facet with its own layers or with ``searched`` ones between base and cap.
 
-    Parameters: ``wavelength_nm`` (P,) [nm]; ``plane`` for the plane wave even when a guide is given.
+    Parameters: ``wavelength_nm`` (P,) [nm]; ``view`` the chip's own light by default.
     """
     facet = recipe.facets[side]
-    light = light_on(
-        recipe, facet, wavelength_nm=wavelength_nm, view=chip_view(recipe, plane=plane)
-    )
+    light = light_on(recipe, facet, wavelength_nm=wavelength_nm, view=view or chip_view(recipe))
     stack = stack_of(facet, searched)
     found = light.shares(
         np.array(stack.nm, dtype=float).reshape(1, len(stack)),

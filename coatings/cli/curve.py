@@ -25,12 +25,18 @@ if TYPE_CHECKING:
 @click.option(
     "--csv", type=click.Path(path_type=Path), metavar="FILE", help="Write the spectra as CSV."
 )
+@click.option(
+    "--plane",
+    is_flag=True,
+    help="Take the plane wave at the modal index even when a guide is given.",
+)
 @shared_options
 def curve(
     recipe: Path,
     facet: FacetName | None,
     nm: tuple[float, float, float] | None,
     csv: Path | None,
+    plane: bool,
     **options: Any,
 ) -> int:
     """Spectra (R, T, A, phase) of the stacks in RECIPE on the chip, with the margin of every window.
@@ -42,6 +48,7 @@ def curve(
     from coatings.documents.results import curve_result, to_text
     from coatings.documents.tables import curve_csv
     from coatings.grids import grid_nm
+    from coatings.guide import guide_figures, guide_profile
     from coatings.recipe import check_available, load_recipe
 
     shared = shared_from(options)
@@ -51,12 +58,18 @@ def curve(
     folder = shared.folder(recipe)
     outputs = {} if csv is None else {"--csv": csv}
     shared.check_outputs(outputs, folder=folder, inputs=[recipe, *loaded.table_paths])
-    curves = {s: facet_curve(loaded, s, wavelength_nm=grid) for s in sides(facet)}
+    curves = {s: facet_curve(loaded, s, wavelength_nm=grid, plane=plane) for s in sides(facet)}
+    figures = guide_figures(loaded)
     files = {} if csv is None else {csv: curve_csv(curves).encode()}
     if grid is None or len(grid) > 1:
         from coatings.documents.pictures import spectrum_picture
 
         files[folder / "curve.png"] = spectrum_picture(loaded, curves, stacks={}, bands={})
-    text = to_text(curve_result(loaded, curves, seed=shared.seed, flat=facet is not None))
-    shared.deliver(files, text, curve_rows(loaded, curves))
+    if figures is not None:
+        from coatings.documents.guide_picture import guide_picture
+
+        profile = guide_profile(loaded)
+        files[folder / "guide.png"] = guide_picture(figures, profile, title=loaded.title)
+    text = to_text(curve_result(loaded, curves, figures, seed=shared.seed, flat=facet is not None))
+    shared.deliver(files, text, curve_rows(loaded, curves, figures))
     return 0 if all(c.meets for c in curves.values()) else 1

@@ -21,7 +21,7 @@ from coatings.documents.results import plan_result, to_text
 from coatings.errors import InputError, Problem
 from coatings.executors import default_workers
 from coatings.facets import chip_view, facet_spectrum, film_rows, light_on, stack_of
-from coatings.laser import Judgement, LaserEstimate, power_current
+from coatings.laser import FacetLight, Judgement, LaserEstimate, estimate, power_current
 from coatings.product import facet_light, laser_chip, product_estimate, product_limits
 from coatings.recipe import FacetName, Recipe
 from coatings.stack import Stack
@@ -89,8 +89,8 @@ def _check_task(recipe: Recipe, sides: tuple[FacetName, ...], take_number: int |
         raise InputError(
             Problem("--take", f"needs one facet that is searched, but {what}; name it with --facet")
         )
-    if recipe.laser is not None:
-        laser_chip(recipe)
+    if recipe.laser is not None:  # numbers that contradict each other do so with any facets
+        estimate(laser_chip(recipe), FacetLight(R=0.1, T=0.9), FacetLight(R=0.9, T=0.1))
 
 
 def planned_product(

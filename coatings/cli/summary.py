@@ -15,12 +15,18 @@ from coatings.facets import facet_spectrum
 from coatings.recipe.process import process_errors
 from coatings.stack import Stack
 
+OTHER_LIGHT = {
+    "plane": "as a plane wave at the modal index",
+    "coating": "the film alone at the tilt angle",
+}
+
 if TYPE_CHECKING:
     from coatings.cli.planning import Planned
     from coatings.cli.screen import Row
     from coatings.curve import FacetCurve
     from coatings.design.plan import FacetPlan
     from coatings.design.relax import Shortfall
+    from coatings.guide import GuideFigures
     from coatings.recipe import Facet, FacetName, Recipe
 
 HOPELESS = 5e-4
@@ -37,20 +43,22 @@ def plan_rows(planned: Planned) -> Iterator[Row]:
     yield from note_rows(recipe, planned.stacks)
 
 
-def curve_rows(recipe: Recipe, curves: Mapping[FacetName, FacetCurve]) -> Iterator[Row]:
+def curve_rows(
+    recipe: Recipe, curves: Mapping[FacetName, FacetCurve], guide: GuideFigures | None
+) -> Iterator[Row]:
     """Summary of ``curve``: per facet the shares at the wavelength of operation and every margin."""
     yield "CURVE", title(recipe)
-    at = np.array([recipe.chip.wavelength_nm])
+    at = recipe.chip.wavelength_nm
+    if guide is not None:
+        yield "GUIDE", guide_text(guide)
     for side, curve in curves.items():
-        light = facet_spectrum(recipe, side, wavelength_nm=at)
-        shares = ", ".join(
-            f"{name} {percent(float(value[0]))}"
-            for name, value in (("R", light.R), ("T", light.T), ("A", light.A))
-        )
-        yield (
-            side_label(side),
-            f"{shares} at {at[0]:g} nm, phase {light.phase_rad[0]:.3f} rad",
-        )
+        light = curve.at_work
+        kinds = [("R", light.R), ("T", light.T), ("A", light.A)]
+        kinds += [("S", light.S)] if light.model != "plane" else []
+        shares = ", ".join(f"{name} {percent(float(value[0]))}" for name, value in kinds)
+        yield side_label(side), f"{shares} at {at:g} nm, phase {light.phase_rad[0]:.3f} rad"
+        for name, other in curve.others.items():
+            yield "", f"{OTHER_LIGHT[name]}: R {percent(float(other.R[0]))}"
         yield "", escape(_own_layers(recipe.facets[side]))
         for window in curve.windows:
             inside = window.margin >= 0
@@ -66,6 +74,16 @@ def curve_rows(recipe: Recipe, curves: Mapping[FacetName, FacetCurve]) -> Iterat
         if not curve.windows:
             yield "", "no windows to meet"
     yield from note_rows(recipe, dict.fromkeys(curves))
+
+
+def guide_text(guide: GuideFigures) -> str:
+    """The chip's mode in one line."""
+    width = guide.far_field_fwhm_deg
+    far = "far field wider than 90 degrees" if width is None else f"far field {width:.3g} degrees"
+    return (
+        f"{guide.polarization} mode: effective index {guide.effective_index:.4f}, group index "
+        f"{guide.group_index:.3f}, height {guide.near_field_height_um:.3g} um, {far}"
+    )
 
 
 def note_rows(recipe: Recipe, stacks: Mapping[FacetName, Stack | None]) -> Iterator[Row]:

@@ -173,17 +173,18 @@ class Goal:
         return np.maximum(np.where(floored & capped, half, one_sided), LEAST_WIDTH)
 
 
-def facet_goal(recipe: Recipe, side: FacetName) -> Goal:
+def facet_goal(recipe: Recipe, side: FacetName, *, plane: bool = False) -> Goal:
     """Goal of a facet over all its windows, on the full grid; both polarizations of a window that asks for
     them.
 
-    Parameters: ``recipe``; ``side`` "front" or "rear". The facet must have at least one window.
+    Parameters: ``recipe``; ``side`` "front" or "rear"; ``plane`` for the plane wave even where the recipe has a
+    guide. The facet must have at least one window.
     """
     facet = recipe.facets[side]
     lights, counts, numbers = [], [], []
     for number, window in enumerate(facet.windows):
         grid = window_grid_nm(window.band_nm)
-        for view in window_views(recipe, window):
+        for view in window_views(window, plane=plane):
             lights.append(light_on(recipe, facet, wavelength_nm=grid, view=view))
             counts.append(len(grid))
             numbers.append(number)

@@ -125,26 +125,31 @@ def _box(ax: Axes, x: float, width: float, colour: str) -> Rectangle:
 
 
 def draw_yields(ax: Axes, plan: FacetPlan) -> PathCollection:
-    """Layers against yield: the shortlist, the best of each count filled, the stack taken ringed."""
-    colour = SIDE_COLOURS[plan.side]
+    """Layers against yield: the shortlist, the best of each count filled, the stack taken ringed.
+
+    Where no errors of the run are given, the margin stands for the yield.
+    """
+    colour, by_margin = SIDE_COLOURS[plan.side], plan.task.errors.none
     counts = np.array([len(found.nm) for found in plan.stacks], dtype=float)
-    yields = np.array([100 * found.yields.chips for found in plan.stacks])
-    best = {c: float(yields[counts == c].max()) for c in np.unique(counts)}
+    values = 100 * np.array([f.margin if by_margin else f.yields.chips for f in plan.stacks])
+    best = {count: float(values[counts == count].max()) for count in np.unique(counts)}
     ax.plot(list(best), list(best.values()), color=colour, lw=1.0, alpha=0.5)
-    is_best = np.array([y == best[c] for c, y in zip(counts, yields, strict=True)])
-    ax.scatter(counts[~is_best], yields[~is_best], s=24, color="white", edgecolor=colour, zorder=3)
-    points = ax.scatter(counts[is_best], yields[is_best], s=24, color=colour, zorder=4)
-    taken = plan.chosen
-    ax.scatter(
-        counts[taken], yields[taken], s=130, facecolor="none", edgecolor=INK, lw=1.4, zorder=5
-    )
-    layers = "1 layer" if counts[taken] == 1 else f"{counts[taken]:.0f} layers"
-    ax.set_title(f"{plan.side}: {yields[taken]:.1f} % with {layers}", color=colour)
+    is_best = np.array([v == best[count] for count, v in zip(counts, values, strict=True)])
+    ax.scatter(counts[~is_best], values[~is_best], s=24, color="white", edgecolor=colour, zorder=3)
+    points = ax.scatter(counts[is_best], values[is_best], s=24, color=colour, zorder=4)
+    count, value = counts[plan.chosen], values[plan.chosen]
+    ax.scatter(count, value, s=130, facecolor="none", edgecolor=INK, lw=1.4, zorder=5)
+    layers = "1 layer" if count == 1 else f"{count:.0f} layers"
+    ax.set_title(f"{plan.side}: {value:.{2 if by_margin else 1}f} % with {layers}", color=colour)
     ax.set_xlabel("searched layers")
-    ax.set_ylabel("chips inside all windows (%)")
     ax.xaxis.set_major_locator(MaxNLocator(integer=True, nbins=12))
     ax.set_xlim(counts.min() - 0.6, counts.max() + 0.6)
-    ax.set_ylim(-4.0, 106.0)
+    if by_margin:
+        ax.set_ylabel("margin to the windows (%)")
+        ax.axhline(0.0, color=GATE, lw=1.2)
+    else:
+        ax.set_ylabel("chips inside all windows (%)")
+        ax.set_ylim(-4.0, 106.0)
     return points
 
 

@@ -14,6 +14,7 @@ if TYPE_CHECKING:  # searching and laser models are slow to import, and curve ne
     from coatings.design.plan import FacetPlan
     from coatings.design.search import Found
     from coatings.facets import FloatArray
+    from coatings.guide import GuideFigures
     from coatings.laser import Judgement, LaserEstimate
     from coatings.recipe import FacetName, Recipe
     from coatings.stack import Stack
@@ -39,11 +40,18 @@ def to_text(result: Json) -> str:
 
 
 def curve_result(
-    recipe: Recipe, curves: Mapping[FacetName, FacetCurve], *, seed: int, flat: bool
+    recipe: Recipe,
+    curves: Mapping[FacetName, FacetCurve],
+    guide: GuideFigures | None,
+    *,
+    seed: int,
+    flat: bool,
 ) -> Json:
-    """Result of ``curve``: one facet ``flat``, or both by side."""
+    """Result of ``curve``: one facet ``flat``, or both by side; the guide's table where there is one."""
     parts: Json = {side: _curve(curve) for side, curve in curves.items()}
     body: Json = next(iter(parts.values())) if flat else parts
+    if guide is not None:
+        body["guide"] = guide_table(guide)
     return {**head(recipe, seed=seed), **body, **evidence(recipe, dict.fromkeys(curves))}
 
 
@@ -54,6 +62,23 @@ def evidence(
     return {
         "notes": [*result_notes(recipe, stacks), *more],
         "materials": material_sources(recipe, stacks),
+    }
+
+
+def guide_table(guide: GuideFigures) -> Json:
+    """Figures of the chip's mode."""
+    return {
+        "polarization": guide.polarization,
+        "wavelength_nm": guide.wavelength_nm,
+        "effective_index": guide.effective_index,
+        "group_index": guide.group_index,
+        "modal_loss_per_cm": guide.modal_loss_per_cm,
+        "confinement": [
+            {"layer": layer, "share": float(share)}
+            for layer, share in zip(guide.layers, guide.confinement, strict=True)
+        ],
+        "near_field_height_um": guide.near_field_height_um,
+        "far_field_fwhm_deg": guide.far_field_fwhm_deg,
     }
 
 
@@ -69,6 +94,10 @@ def _curve(curve: FacetCurve) -> Json:
         "A": _plain(spectrum.A),
         "S": _plain(spectrum.S),
         "phase_rad": _plain(spectrum.phase_rad),
+        "R_at_wavelength": {
+            curve.model: float(curve.at_work.R[0]),
+            **{name: float(other.R[0]) for name, other in curve.others.items()},
+        },
         "windows": [
             {"band_nm": list(w.window.band_nm), "margin": w.margin, "worst_nm": w.worst_nm}
             for w in curve.windows

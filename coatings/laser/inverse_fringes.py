@@ -33,6 +33,7 @@ _MOST_SPIKES = 0.05
 _SPIKE_ROUNDS = 3
 _LEAST_SPIKE = 1e-6
 _HIDDEN = 0.05
+_SAME_PERIOD = 0.15
 _FWHM_SIGMAS = 2.0 * np.sqrt(2.0 * np.log(2.0))
 
 
@@ -139,10 +140,13 @@ def read_ripple(
     expected = None if mode_spacing_GHz is None else mode_spacing_GHz * 1e7 / c
     logarithm = np.log(spectrum.intensity)
     periods = find_periods(wave, logarithm, expected_per_cm=expected)
-    windows = [
-        _settle(wave, logarithm, at, period, _blur(resolution_nm, at, period))
-        for period in _visible(periods, resolution_nm, at)
-    ]
+    windows = []
+    for period in _visible(periods, resolution_nm, at):
+        window = _settle(wave, logarithm, at, period, _blur(resolution_nm, at, period))
+        if abs(window.shape.period / period - 1.0) < _SAME_PERIOD:
+            windows.append(window)
+    if not windows:
+        raise too_few_fringes("shows no period that lasts")
     best = _without_spikes(min(windows, key=_Window.mean_square))
     return _reading(best, at)
 
@@ -243,9 +247,9 @@ def _reading(window: _Window, at: float) -> RippleReading:
         raise too_few_fringes(f"shows {shape.fringes:.2g} fringes")
     degrees = window.logarithm.size - shape.parameters.size
     sigma, memory = _ln_x_sigma(window, degrees)
-    if not sigma * _STANDS_OUT < 1.0:
-        raise too_few_fringes("no ripple stands out of the noise")
     x = shape.x
+    if not sigma * _STANDS_OUT < 1.0 or (window.mean_square() > x**2 and memory > _CORRELATED):
+        raise too_few_fringes("no ripple stands out of the rest")
     spacing_nm = 1e7 * shape.period / at**2
     peaks, valleys = (_places(shape, at, offset) for offset in (0.0, np.pi))
     ln_F, _, _ = log_shape(np.array([x, x]), np.array([0.0, np.pi]), blur=shape.blur)

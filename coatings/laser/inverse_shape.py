@@ -11,7 +11,6 @@ from coatings.laser.checks import FloatArray
 _SHARP = 1e-7
 _LAST_HARMONIC = 27.6  # exp(-27.6) is 1e-12
 _MOST_HARMONICS = 3000
-_FEWEST_TO_BEND = 4.0
 _FEWEST_TO_TWIST = 8.0
 _BEND = 1e-3
 _FAR = 600.0
@@ -139,8 +138,6 @@ def _bent(decay: FloatArray) -> tuple[FloatArray, FloatArray]:
 
 def coefficients(fringes: float) -> tuple[int, int, int]:
     """Coefficients of envelope, phase and decay that a number of fringes can carry."""
-    if fringes < _FEWEST_TO_BEND:
-        return 3, 2, 2
     return (4, 3, 3) if fringes < _FEWEST_TO_TWIST else (5, 4, 3)
 
 

@@ -60,7 +60,6 @@ from coatings.optics.scene import Scene
 from coatings.optics.shifts import mix_of, nodes_of, span_of
 from coatings.optics.threads import share
 
-
 R_ERRORS = ((0.1 + 1e-9, 1e-4), (0.22 + 1e-9, 4e-4))
 WORST_R_ERROR = 1.5e-3
 

@@ -177,7 +177,7 @@ def modal_facet_at(facet: ModalFacet, points: Integers) -> ModalFacet:
         guide,
         wavelength_nm=guide.wavelength_nm[points],
         index=guide.index[:, points],
-        slope_per_nm=None if guide.slope_per_nm is None else guide.slope_per_nm[:, points],
+        slope_per_nm=guide.slopes[:, points],
     )
     mode = fundamental(part, tm=facet.mode.tm)
     return ModalFacet(mode, facet.outside[points], facet.films[:, points], facet.fine)

@@ -185,3 +185,14 @@ def test_as_a_process(recipe: Path, text: str, arguments: list[str]) -> None:
     assert len(ended.stderr.splitlines()) == 1
     assert written(recipe.parent, text) == recipe
     assert sorted(path.name for path in recipe.parent.iterdir()) == ["small.toml"]
+
+
+def test_numbers_of_the_laser_that_contradict_each_other(
+    recipe: Path, capsys: pytest.CaptureFixture[str], monkeypatch: pytest.MonkeyPatch
+) -> None:
+    """More light than electrical power: said before the search, not after it."""
+    monkeypatch.setattr("coatings.cli.planning.plan_facets", pytest.fail)
+    recipe.write_text(changed("junction_V             = 1.3", "junction_V = 0.3"))
+    (line,) = refusal(capsys, "plan", recipe)
+    assert "junction_V" in line
+    assert not Path("out").exists()

@@ -1,11 +1,15 @@
 """The slow, obvious twin of `ModalFacet`: one stack, one wavelength, no closed forms.
 
-The mode's profile is summed over x by Gauss's rule at every q; y comes from the textbook matrices;
+The mode's profile is summed over x by Gauss's rule at every q, its two tails apart; y comes from the textbook matrices;
 e, c and d are three sums along another contour than the product's, a plain parabola below the axis.
 Thicknesses may be complex, for derivatives by Cauchy's integral.
 """
 
 import numpy as np
+
+
+LONGEST_PIECE = 0.4
+FARTHEST = 60.0
 
 
 def _root(square):
@@ -14,36 +18,30 @@ def _root(square):
 
 
 def _pieces(mode):
-    """Nodes, weights, profile and w at one wavelength, x in 1/k0, tails as far as they matter."""
+    """Nodes, weights, profile and w between the outermost interfaces, x in 1/k0."""
     at = mode.guide.position[0]
-    reach = 40.0 / mode.decay.real.min()
-    ends = np.concatenate([[at[0] - reach], at, [at[-1] + reach]])
     x0, w0 = np.polynomial.legendre.leggauss(24)
     xs, ws, eps = [], [], []
-    for j, (low, high) in enumerate(zip(ends[:-1], ends[1:], strict=True)):
-        count = max(1, int(np.ceil((high - low) / 1.0)))
-        edges = np.linspace(low, high, count + 1)
+    for j, (low, high) in enumerate(zip(at[:-1], at[1:], strict=True)):
+        edges = np.linspace(low, high, max(1, int(np.ceil((high - low) / LONGEST_PIECE))) + 1)
         half = 0.5 * np.diff(edges)[:, None]
         xs.append((0.5 * (edges[:-1] + edges[1:])[:, None] + half * x0).ravel())
         ws.append((half * w0).ravel())
-        eps.append(np.full(xs[-1].size, mode.guide.index[j, 0] ** 2))
+        eps.append(np.full(xs[-1].size, mode.guide.index[j + 1, 0] ** 2))
     x, weight, eps = map(np.concatenate, (xs, ws, eps))
-    k0_per_um = 2e3 * np.pi / mode.guide.wavelength_nm[0]
-    phi = mode.profile((x - at[0]) / k0_per_um)
-    w = 1.0 / eps if mode.tm else np.ones_like(eps)
-    return x, weight, phi / np.sqrt((weight * w * phi**2).sum()), w
+    return x, weight, 1.0 / eps if mode.tm else np.ones_like(eps)
 
 
 def _path(top, depth):
-    """Nodes and weights on a parabola from 0 to ``top`` and on the axis beyond."""
-    x, w = np.polynomial.legendre.leggauss(400)
+    """Nodes and weights on a parabola from 0 to ``top`` and on the axis as far as it matters."""
+    x, w = np.polynomial.legendre.leggauss(300)
     s, ws = 0.5 * (x + 1.0), 0.5 * w
     t, dt = s**3, 3.0 * s**2
     arc = top * t - 4j * depth * t * (1 - t)
     arc_weight = (top - 4j * depth * (1 - 2 * t)) * dt * ws
-    x, w = np.polynomial.legendre.leggauss(700)
-    u, wu = 0.5 * (x + 1.0), 0.5 * w
-    return np.concatenate([arc, top / u]), np.concatenate([arc_weight, top / u**2 * wu])
+    x, w = np.polynomial.legendre.leggauss(300)
+    half = 0.5 * (FARTHEST - top)
+    return np.concatenate([arc, top + half * (x + 1.0)]), np.concatenate([arc_weight, half * w])
 
 
 def _admittance(q, films, nm, outside, k0_per_nm, tm):
@@ -67,10 +65,24 @@ class Twin:
         self.tm, self.n_eff = mode.tm, mode.n_eff[0]
         self.k0_per_nm = 2.0 * np.pi / mode.guide.wavelength_nm[0]
         self.q, weight = _path(1.3 * highest_index, depth)
-        x, dx, phi, w = _pieces(mode)
-        forth = np.array([(np.exp(-1j * q * x) * dx * phi) @ np.stack([w**0, w]).T for q in self.q])
-        back = np.array([(np.exp(1j * q * x) * dx * phi) @ np.stack([w**0, w]).T for q in self.q])
-        self.f, self.g, self.f_back, self.g_back = *forth.T, *back.T
+        x, dx, w = _pieces(mode)
+        at, gamma = mode.guide.position[0], mode.decay[:, 0]
+        k0_per_um = 2e3 * np.pi / mode.guide.wavelength_nm[0]
+        phi = mode.profile((x - at[0]) / k0_per_um)
+        edge = mode.profile((at[[0, -1]] - at[0]) / k0_per_um)
+        outer = 1.0 / mode.guide.index[[0, -1], 0] ** 2 if self.tm else np.ones(2)
+        square = (dx * w * phi**2).sum() + (outer * edge**2 / (2.0 * gamma)).sum()
+        phi, edge = phi / np.sqrt(square), edge / np.sqrt(square)
+
+        def transforms(q):
+            wave = np.exp(-1j * np.outer(q, x)) * (dx * phi)
+            left = edge[0] * np.exp(-1j * q * at[0]) / (gamma[0] - 1j * q)
+            right = edge[1] * np.exp(-1j * q * at[-1]) / (gamma[1] + 1j * q)
+            f = wave.sum(axis=1) + left + right
+            return f, wave @ w + outer[0] * left + outer[1] * right
+
+        self.f, self.g = transforms(self.q)
+        self.f_back, self.g_back = transforms(-self.q)
         self.weight = weight / np.pi
 
     def reflection(self, films, thickness_nm, *, outside=1.0):
