@@ -21,7 +21,7 @@ PATHS = sorted(path for package in PACKAGES for path in (HOUSE / package).rglob(
 
 # A room imports only rooms above it in this list.
 ROOMS = (
-    "errors", "stack", "grids", "optics", "executors", "recipe", "facets", "design", "laser",
+    "errors", "stack", "grids", "optics", "executors", "recipe", "facets", "guide", "design", "laser",
     "curve", "product", "field", "witness", "trade", "audit", "documents", "cli",
 )  # fmt: skip
 MAY_IMPORT = {"optics": {"errors", "stack", "grids"}, "laser": {"errors", "grids"}}

@@ -7,11 +7,11 @@ from typing import TypeAlias
 
 import numpy as np
 from numpy.typing import NDArray
-from scipy.special import stdtrit
 
 from coatings.errors import InputError
 from coatings.laser.calibrate_model import Fitted, Points, derivatives, joint_fit, residuals
 from coatings.laser.checks import FloatArray
+from coatings.laser.student import t_quantile
 
 _FALSE_ALARM = 0.005
 _MOST_OUTLIERS = 0.2
@@ -101,7 +101,7 @@ def _worst(points: Points, kept: NDArray[np.bool_]) -> tuple[Outlier, float]:
         sigmas=float(deviants[kind][place]),
     )
     dof = rows.size - 3
-    return outlier, float(stdtrit(dof, 1.0 - 0.5 * _FALSE_ALARM / (2.0 * rows.size)))
+    return outlier, t_quantile(1.0 - 0.5 * _FALSE_ALARM / (2.0 * rows.size), dof)
 
 
 def _against_line(points: Points) -> tuple[_Pair, _Pair]:
@@ -175,7 +175,7 @@ def leave_one_length_out(points: Points, full: Fitted) -> tuple[LeftOut, ...]:
     if numbers.size < 3 or full.dof < 1:
         return ()
     share = 0.5 * _FALSE_ALARM / (4 * numbers.size)
-    limit = float(stdtrit(full.dof, 1.0 - share))
+    limit = t_quantile(1.0 - share, full.dof)
     rows = []
     for number in numbers:
         out = groups == number

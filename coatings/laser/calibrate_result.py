@@ -6,12 +6,12 @@ from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
-from scipy.special import stdtrit
 
 from coatings.errors import InputError, Problem
 from coatings.laser.calibrate_model import Fitted, Points
 from coatings.laser.calibrate_outliers import LeftOut, Outlier
 from coatings.laser.checks import FloatArray
+from coatings.laser.student import half_width
 
 NAMES = (
     "internal_loss_per_cm",
@@ -20,7 +20,6 @@ NAMES = (
     "modal_gain_per_cm",
 )
 _BEYOND_SIGMAS = 2.0
-_SHARE = 0.95
 
 
 @dataclass(frozen=True)
@@ -132,14 +131,8 @@ def natural_covariance(fit: Fitted) -> FloatArray:
 def _quantity(value: float, sigma: float, degrees: float) -> Quantity:
     if not np.isfinite(sigma):
         return Quantity(value, None, 0.0, None, None)
-    reach = sigma * student_t(degrees)
+    reach = half_width(sigma, degrees)
     return Quantity(value, sigma, degrees, value - reach, value + reach)
-
-
-def student_t(degrees: float) -> float:
-    """Half width of a 95 % interval in standard errors; the normal one for inf degrees."""
-    # stdtrit has no limit for infinite degrees; a million is normal to seven digits.
-    return float(stdtrit(min(degrees, 1e6), 0.5 + 0.5 * _SHARE))
 
 
 def refuse_unphysical(found: tuple[Quantity, ...]) -> None:

@@ -18,7 +18,6 @@ from dataclasses import dataclass
 from enum import Enum
 
 import numpy as np
-from scipy.special import stdtrit
 
 from coatings.errors import ArrayError, InputError, Problem
 from coatings.laser.checks import not_negative, reflectances
@@ -26,8 +25,8 @@ from coatings.laser.facets import FacetLight
 from coatings.laser.inverse_fringes import RippleReading
 from coatings.laser.inverse_slopes import SlopeRatio
 from coatings.laser.resonator import single_pass_gain
+from coatings.laser.student import combined, half_width
 
-_SHARE = 0.95
 _NEPER_PER_DB = np.log(10.0) / 10.0
 
 
@@ -225,9 +224,6 @@ def _from_logarithm(
 
 
 def _reach(parts: tuple[tuple[float, float], ...]) -> tuple[float, float]:
-    """Half width of the 95 % interval of a sum of errors, and its degrees (Welch, Satterthwaite)."""
-    total = sum(sigma**2 for sigma, _ in parts)
-    estimated = sum(sigma**4 / degrees for sigma, degrees in parts)
-    degrees = total**2 / estimated if estimated > 0.0 else np.inf
-    # stdtrit has no limit for infinite degrees; a million is normal to seven digits.
-    return float(np.sqrt(total) * stdtrit(min(degrees, 1e6), 0.5 + 0.5 * _SHARE)), float(degrees)
+    """Half width of the 95 % interval of a sum of errors, and its degrees of freedom."""
+    sigma, degrees = combined(parts)
+    return half_width(sigma, degrees), degrees

@@ -26,7 +26,7 @@ from coatings.laser.inverse_shape import Shape, first_shape, fit_shape, log_shap
 
 _MOST_FRINGES = 60.0
 _FIRST_FRINGES = 12.0
-_STANDS_OUT = 5.0
+_STANDS_OUT = 6.0
 _CORRELATED = 0.3
 _SPIKE_SIGMAS = 6.0
 _MOST_SPIKES = 0.05
@@ -34,6 +34,8 @@ _SPIKE_ROUNDS = 3
 _LEAST_SPIKE = 1e-6
 _HIDDEN = 0.05
 _SAME_PERIOD = 0.15
+_POINTS_A_PEAK = 1.0
+_POINTS_A_FRINGE = 3.0
 _FWHM_SIGMAS = 2.0 * np.sqrt(2.0 * np.log(2.0))
 
 
@@ -250,6 +252,12 @@ def _reading(window: _Window, at: float) -> RippleReading:
     x = shape.x
     if not sigma * _STANDS_OUT < 1.0 or (window.mean_square() > x**2 and memory > _CORRELATED):
         raise too_few_fringes("no ripple stands out of the rest")
+    points_a_fringe = window.wave.size / shape.fringes
+    if points_a_fringe < _POINTS_A_FRINGE or (1.0 - x) * points_a_fringe < _POINTS_A_PEAK:
+        raise too_few_fringes(
+            f"{points_a_fringe:.2g} points a fringe can't show peaks of {(1.0 - x) / np.pi:.2g} "
+            "fringes"
+        )
     spacing_nm = 1e7 * shape.period / at**2
     peaks, valleys = (_places(shape, at, offset) for offset in (0.0, np.pi))
     ln_F, _, _ = log_shape(np.array([x, x]), np.array([0.0, np.pi]), blur=shape.blur)

@@ -11,10 +11,10 @@ from enum import Enum
 
 import numpy as np
 from numpy.typing import NDArray
-from scipy.special import stdtr
 
 from coatings.errors import ArrayError, InputError, Problem
 from coatings.laser.checks import FloatArray, not_negative, numbers
+from coatings.laser.student import t_probability
 
 _FEWEST = 4
 _MOST_KNEES = 120
@@ -209,7 +209,7 @@ def _drift_note(over: FloatArray, under: FloatArray) -> tuple[str, ...]:
     rest = over - design @ line
     error = np.sqrt(rest @ rest / (n - 3) * np.linalg.inv(design.T @ design)[2, 2])
     change = 2.0 * line[2] / line[1]
-    sure = error == 0.0 or 2.0 * stdtr(n - 3, -abs(line[2]) / error) < _SURE
+    sure = error == 0.0 or 2.0 * t_probability(-abs(line[2]) / error, n - 3) < _SURE
     if not (sure and abs(change) > _MATTERS):
         return ()
     return (

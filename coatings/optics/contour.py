@@ -15,6 +15,7 @@ h keeps exp(-i q x) tame over the whole guide. q, K1, h and sigma are in units o
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 from functools import lru_cache
 
@@ -28,6 +29,8 @@ MOST_GROWTH = 3.0
 GRADING = 3.0
 NODES = {False: (48, 48), True: (64, 128)}
 """Nodes on arc and tail, by ``tm``; they hold 1e-6 in r."""
+MORE_ON_ARC, STEP_ON_ARC = 32, 16
+"""A guide of thickness D makes exp(i q D) turn D times as q grows by one: 32 + D nodes at least."""
 
 
 @dataclass(frozen=True)
@@ -43,6 +46,13 @@ def unit_nodes(n: int) -> tuple[Reals, Reals]:
     """Gauss-Legendre nodes and weights on (0, 1)."""
     x, w = np.polynomial.legendre.leggauss(n)
     return 0.5 * (x + 1.0), 0.5 * w
+
+
+def nodes_for(guide_thickness: Reals, *, tm: bool) -> tuple[int, int]:
+    """How many nodes arc and tail take for guides of these thicknesses [1/k0]."""
+    arc, tail = NODES[tm]
+    steps = math.ceil((MORE_ON_ARC + float(guide_thickness.max())) / STEP_ON_ARC)
+    return max(arc, STEP_ON_ARC * steps), tail
 
 
 def contour(

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from coatings.optics.arrays import Complexes, Reals, parts
-from coatings.optics.contour import NODES, Contour, contour
+from coatings.optics.contour import Contour, contour, nodes_for
 from coatings.optics.far_field import transforms
 from coatings.optics.guide_modes import GuidedMode
 
@@ -50,11 +50,12 @@ class Places:
 
 def contour_of(mode: GuidedMode, films: Complexes, outside: Complexes, *, fine: int = 1) -> Contour:
     """The contour of a mode in front of these films; ``fine`` multiplies its nodes."""
-    arc, tail = NODES[mode.tm]
     position = mode.guide.position
+    thickness = position[:, -1] - position[:, 0]
+    arc, tail = nodes_for(thickness, tm=mode.tm)
     return contour(
         _highest_index(mode, films, outside),
-        guide_thickness=position[:, -1] - position[:, 0],
+        guide_thickness=thickness,
         decay=mode.decay.real.min(axis=0),
         nodes=(fine * arc, fine * tail),
     )

@@ -49,8 +49,6 @@ BAD_RECIPES = {
     "table that leaves the folder": (TEXT + TABLE.format('"../x.csv"'), "leaves the recipe's folder"),
     "table that is absolute": (TEXT + TABLE.format('"/etc/passwd"'), "absolute path"),
     "table that is not there": (TEXT + TABLE.format('"none.csv"'), "no such file"),
-    "key of a later version": (changed("index         = 3.3", "index = 3.3\ntilt_deg = 7.0\n"
-                                       "lateral_um = 3.0"), "is not available yet"),
 }  # fmt: skip
 
 BAD_TABLES = {

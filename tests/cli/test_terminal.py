@@ -68,15 +68,13 @@ def test_silence(planned: Path, capsys: pytest.CaptureFixture[str], option: str)
     assert (option == "--quiet") is (said.out == "")
 
 
-@pytest.mark.parametrize(
-    "env",
-    [
-        {"LC_ALL": "C", "LANG": "C"},
-        {"LC_ALL": "C", "PYTHONIOENCODING": "ascii"},
-        {"LC_ALL": "C", "PYTHONUTF8": "0", "PYTHONCOERCECLOCALE": "0"},
-        {"TERM": "dumb"},
-    ],
+PLAIN_SIGNS: tuple[dict[str, str], ...] = (
+    {"LC_ALL": "C", "PYTHONIOENCODING": "ascii"},
+    {"LC_ALL": "C", "PYTHONUTF8": "0", "PYTHONCOERCECLOCALE": "0", "TERM": "dumb"},
 )
+
+
+@pytest.mark.parametrize("env", PLAIN_SIGNS)
 def test_letters_that_the_terminal_lacks(recipe: Path, env: dict[str, str]) -> None:
     recipe.write_text(TEXT.replace("small chip", "chip \u00b5 \u2192"), encoding="utf-8")
     ended = process("curve", recipe, env={**PLAIN, **env}, cwd=recipe.parent)
@@ -84,13 +82,19 @@ def test_letters_that_the_terminal_lacks(recipe: Path, env: dict[str, str]) -> N
     assert ended.stderr == ""
     assert ended.stdout.startswith("CURVE 980 nm chip ")
     assert "\x1b" not in ended.stdout
-    ended = process("curve", recipe, "--json", "-", env={**PLAIN, **env}, cwd=recipe.parent)
-    assert json.loads(ended.stdout)["tool"] == "facetwright"
+
+
+def test_json_is_utf8_whatever_the_terminal_takes(recipe: Path) -> None:
+    env = {**PLAIN, **PLAIN_SIGNS[0]}
+    ended = process("materials", "Ta2O5", "--json", "-", env=env, cwd=recipe.parent)
+    assert json.loads(ended.stdout)["name"] == "Ta2O5"
+    ended = process("materials", "silicone-gel", "--json", "-", env=env, cwd=recipe.parent)
+    assert not ended.stdout.isascii()
 
 
 @pytest.mark.parametrize(
     ("arguments", "status"),
-    [(["materials"], 0), (["curve", "small.toml", "--json", "-"], 1), (["curve", "small.toml"], 1)],
+    [(["materials"], 0), (["materials", "Ta2O5", "--json", "-"], 0), (["curve", "small.toml"], 1)],
 )
 def test_reader_who_leaves_early(recipe: Path, arguments: list[str], status: int) -> None:
     reading, writing = os.pipe()
@@ -104,7 +108,7 @@ def test_reader_who_leaves_early(recipe: Path, arguments: list[str], status: int
     assert ended.stderr == ""
 
 
-@pytest.mark.parametrize("arguments", [["materials"], ["curve", "small.toml", "--json", "-"]])
+@pytest.mark.parametrize("arguments", [["materials"], ["materials", "Ta2O5", "--json", "-"]])
 @pytest.mark.skipif(not Path("/dev/full").exists(), reason="no device that is always full")
 def test_standard_output_on_a_full_disk(recipe: Path, arguments: list[str]) -> None:
     with Path("/dev/full").open("w") as full:
