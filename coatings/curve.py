@@ -8,7 +8,15 @@ import numpy as np
 
 from coatings.design.model import FacetModel, facet_frame
 from coatings.design.windows import facet_goal
-from coatings.facets import FacetSpectrum, FloatArray, View, chip_view, facet_spectrum, film_rows
+from coatings.facets import (
+    FacetSpectrum,
+    FloatArray,
+    View,
+    chip_materials,
+    chip_view,
+    facet_spectrum,
+    film_rows,
+)
 from coatings.grids import grid_nm
 from coatings.recipe import FacetName, Recipe, Window
 from coatings.stack import Stack
@@ -118,9 +126,7 @@ def default_grid_nm(recipe: Recipe, side: FacetName) -> FloatArray:
     bands = [recipe.chip.band_nm, *(window.band_nm for window in facet.windows)]
     low, high = min(band[0] for band in bands), max(band[1] for band in bands)
     around = max(0.2 * (high - low), 10.0)
-    guide = recipe.chip.guide
-    chip = [recipe.chip.index] if guide is None else [layer.material for layer in guide.layers]
-    names = [*facet.films, facet.outside, *chip]
+    names = [*facet.films, facet.outside, *chip_materials(recipe)]
     ranges = [recipe.material(name).range_nm for name in names if isinstance(name, str)]
     least = max([low - around, *(r[0] for r in ranges)])
     most = min([high + around, *(r[1] for r in ranges)])

@@ -114,6 +114,14 @@ def modal_index(recipe: Recipe, wavelength_nm: FloatArray, *, view: View) -> NDA
     return recipe.sister_index(view.index, wavelength_nm).astype(complex)
 
 
+def chip_materials(recipe: Recipe) -> tuple[str, ...]:
+    """Names of the materials that the chip's index or guide is made of."""
+    chip = recipe.chip
+    if chip.guide is not None:
+        return tuple(layer.material for layer in chip.guide.layers if layer.material is not None)
+    return (chip.index,) if isinstance(chip.index, str) else ()
+
+
 def chip_guide(recipe: Recipe, wavelength_nm: FloatArray) -> Guide:
     """The epitaxial guide of a recipe that has one, dispersion of its materials included."""
     guide = recipe.chip.guide

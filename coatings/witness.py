@@ -3,12 +3,14 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, field
+from math import ceil, floor
 
 import numpy as np
 from numpy.typing import NDArray
 
 from coatings.errors import InputError, Problem
-from coatings.facets import FloatArray, film_rows
+from coatings.facets import FloatArray, chip_materials, chip_view, film_rows, modal_index
+from coatings.grids import grid_nm
 from coatings.optics.slit import Slit
 from coatings.optics.witness import WitnessPiece, WitnessSpectrum, witness_spectrum
 from coatings.recipe import Facet, Recipe, Witness
@@ -46,9 +48,7 @@ def witness_stack(recipe: Recipe, witness: Witness) -> Stack:
     """Layers on a witness piece, plate outward: those of its facet that reach it, times the tooling."""
     facet = recipe.facets[witness.facet]
     entries = [*facet.base, *(facet.layers or ()), *facet.cap]
-    return Stack(
-        tuple(Layer(e.material, e.nm * witness.tooling) for e in entries if e.on_witness)
-    )
+    return Stack(tuple(Layer(e.material, e.nm * witness.tooling) for e in entries if e.on_witness))
 
 
 def witness_curve(recipe: Recipe, witness: Witness, *, wavelength_nm: FloatArray) -> WitnessCurve:
@@ -84,13 +84,30 @@ def witness_curve(recipe: Recipe, witness: Witness, *, wavelength_nm: FloatArray
 def witness_range_nm(recipe: Recipe, witness: Witness) -> tuple[float, float]:
     """Wavelengths [nm] that plate and films reach, a slit's width inside."""
     facet = recipe.facets[witness.facet]
-    plate = recipe.chip.index if witness.substrate == CHIP else witness.substrate
-    names = [name for name in (*facet.films, plate) if isinstance(name, str)]
+    plate = chip_materials(recipe) if witness.substrate == CHIP else (witness.substrate,)
+    names = (*facet.films, *plate)
     ranges = [recipe.material(name).range_nm for name in names]
     reach = Slit("triangular", witness.bandwidth_nm).reach_nm if witness.bandwidth_nm else 0.0
     least = max((r[0] for r in ranges), default=1.0) + reach
     most = min((r[1] for r in ranges), default=1e6) - reach
     return least, most
+
+
+def default_witness_grid_nm(recipe: Recipe, witness: Witness) -> FloatArray:
+    """Wavelengths [nm] that show the piece: from two thirds to half as long again of the wavelength of
+    operation, as far as plate and films reach."""
+    least, most = witness_range_nm(recipe, witness)
+    centre = recipe.chip.wavelength_nm
+    low, high = ceil(max(centre / 1.5, least)), floor(min(1.5 * centre, most))
+    if low >= high:
+        raise InputError(
+            Problem(
+                f"{recipe.path}: witness {witness.name}",
+                f"plate and films have no range in common around {centre:g} nm; give --nm or "
+                "another substrate",
+            )
+        )
+    return grid_nm(float(low), float(high), max(1.0, float(round((high - low) / 500))))
 
 
 def _seen_through_slit(
@@ -105,7 +122,7 @@ def _seen_through_slit(
 
 def _plate(recipe: Recipe, witness: Witness, grid: FloatArray) -> NDArray[np.complex128]:
     if witness.substrate == CHIP:
-        return recipe.chip_index(grid).astype(complex)
+        return modal_index(recipe, grid, view=chip_view(recipe))
     return recipe.material(witness.substrate).nk(grid)
 
 

@@ -10,7 +10,11 @@ import click
 from coatings.cli.options import facet_option, recipe_argument, shared_from, shared_options, sides
 
 if TYPE_CHECKING:
-    from coatings.recipe import FacetName
+    import numpy as np
+    from numpy.typing import NDArray
+
+    from coatings.cli.options import Shared
+    from coatings.recipe import FacetName, Recipe
 
 
 @click.command(
@@ -26,6 +30,11 @@ if TYPE_CHECKING:
     "--csv", type=click.Path(path_type=Path), metavar="FILE", help="Write the spectra as CSV."
 )
 @click.option(
+    "--witness",
+    metavar="NAME",
+    help="What the spectrophotometer sees of this witness piece instead.",
+)
+@click.option(
     "--plane",
     is_flag=True,
     help="Take the plane wave at the modal index even when a guide is given.",
@@ -33,15 +42,18 @@ if TYPE_CHECKING:
 @shared_options
 def curve(
     recipe: Path,
+    *,
     facet: FacetName | None,
     nm: tuple[float, float, float] | None,
     csv: Path | None,
+    witness: str | None,
     plane: bool,
     **options: Any,
 ) -> int:
     """Spectra (R, T, A, phase) of the stacks in RECIPE on the chip, with the margin of every window.
 
-    Exit status 1 when a window is missed.
+    With --witness what the spectrophotometer reads of that piece, back face included. Exit status 1 when a
+    window is missed.
     """
     from coatings.cli.summary import curve_rows
     from coatings.curve import facet_curve
@@ -58,6 +70,9 @@ def curve(
     folder = shared.folder(recipe)
     outputs = {} if csv is None else {"--csv": csv}
     shared.check_outputs(outputs, folder=folder, inputs=[recipe, *loaded.table_paths])
+    if witness is not None:
+        _refuse_beside_witness(facet, plane)
+        return _deliver_witness(loaded, witness, grid=grid, csv=csv, shared=shared)
     curves = {s: facet_curve(loaded, s, wavelength_nm=grid, plane=plane) for s in sides(facet)}
     figures = guide_figures(loaded)
     files = {} if csv is None else {csv: curve_csv(curves).encode()}
@@ -73,3 +88,33 @@ def curve(
     text = to_text(curve_result(loaded, curves, figures, seed=shared.seed, flat=facet is not None))
     shared.deliver(files, text, curve_rows(loaded, curves, figures))
     return 0 if all(c.meets for c in curves.values()) else 1
+
+
+def _refuse_beside_witness(facet: FacetName | None, plane: bool) -> None:
+    from coatings.errors import InputError, Problem
+
+    if facet is not None or plane:
+        given = "--facet" if facet is not None else "--plane"
+        mend = "leave it out: the piece has its facet, and light from air is a plane wave"
+        raise InputError(Problem("--witness", f"does not go with {given}; {mend}"))
+
+
+def _deliver_witness(
+    recipe: Recipe, name: str, *, grid: NDArray[np.float64] | None, csv: Path | None, shared: Shared
+) -> int:
+    from coatings.cli.witness import witness_rows
+    from coatings.documents.results import to_text
+    from coatings.documents.witness_picture import witness_picture
+    from coatings.documents.witness_result import witness_csv, witness_result
+    from coatings.witness import default_witness_grid_nm, find_witness, witness_curve
+
+    piece = find_witness(recipe, name)
+    wavelength = default_witness_grid_nm(recipe, piece) if grid is None else grid
+    found = witness_curve(recipe, piece, wavelength_nm=wavelength)
+    files = {} if csv is None else {csv: witness_csv(found).encode()}
+    if len(wavelength) > 1:
+        folder = shared.folder(recipe.path)
+        files[folder / "witness.png"] = witness_picture(recipe, found)
+    text = to_text(witness_result(recipe, found, seed=shared.seed))
+    shared.deliver(files, text, witness_rows(recipe, found))
+    return 0

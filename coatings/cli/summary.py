@@ -108,12 +108,15 @@ def why(plan: FacetPlan) -> str:
 
 
 def _next_layer(plan: FacetPlan, *, by_margin: bool) -> str:
-    more = _best_by_count(plan).get(len(plan.taken.nm) + 1)
-    if more is None:
-        return f"max_layers = {plan.task.limits.most_layers} allows no more layers"
-    found = plan.stacks[more]
+    """What more layers would bring, as far as they were searched."""
+    here, most = len(plan.taken.nm), plan.task.limits.most_layers
+    more = {count: number for count, number in _best_by_count(plan).items() if count > here}
+    if not more:
+        return f"max_layers = {most} allows no more" if here == most else "more bring no more"
+    count = min(more)
+    found = plan.stacks[more[count]]
     value = f"margin {percent(found.margin)}" if by_margin else f"{100 * found.yields.chips:.1f} %"
-    return f"one more layer: {value}"
+    return f"with {count} layers: {value}"
 
 
 def shortfall_text(short: Shortfall, plan: FacetPlan) -> str:

@@ -79,15 +79,17 @@ def draw_layers(
     *,
     outside: str,
     colours: Mapping[str, str],
+    inside: str = "chip",
 ) -> list[Rectangle]:
-    """Layers to optical scale between chip (left) and outside (right).
+    """Layers to optical scale between ``inside`` (left: the chip, or a witness piece) and ``outside`` (right).
 
-    ``layers``: (film, thickness in nm, optical thickness in waves), chip outward; ``colours`` by film.
+    ``layers``: (film, thickness in nm, optical thickness in any unit), chip outward; ``colours`` by film.
     """
     total = sum(waves for *_, waves in layers) or 0.25
     end = 0.12 * total
     boxes = [_box(ax, -end, end, CHIP)]
-    ax.text(-0.5 * end, 0.5, "chip", ha="center", va="center", fontsize=8, color=INK)
+    size = 8 if len(inside) < 8 else 6
+    ax.text(-0.5 * end, 0.5, inside, ha="center", va="center", fontsize=size, color=INK)
     at = 0.0
     for film, nm, waves in layers:
         boxes.append(_box(ax, at, waves, colours[film]))
