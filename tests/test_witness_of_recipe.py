@@ -163,7 +163,7 @@ def test_command(recipe: Recipe, tmp_path: Path, capsys: pytest.CaptureFixture[s
     lengths = {len(result[key]) for key in ("wavelength_nm", "R", "T", "A", "S", "phase_rad")}
     assert len(lengths) == 1
     assert (out / "witness.png").read_bytes().startswith(b"\x89PNG")
-    rows = list(csv.DictReader(table.open()))
+    rows = list(csv.DictReader(table.read_text().splitlines()))
     assert [float(row["R"]) for row in rows] == pytest.approx(result["R"], abs=1e-11)
 
 
