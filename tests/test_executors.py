@@ -48,7 +48,10 @@ def interrupted_at_two(x):
 def test_results_come_in_the_order_of_the_pieces(workers):
     seen = []
     outcome = run_all(
-        square, range(7), workers=workers, on_done=lambda piece, result: seen.append((piece, result))
+        square,
+        range(7),
+        workers=workers,
+        on_done=lambda piece, result: seen.append((piece, result)),
     )
     assert outcome.results == (0, 1, 4, 9, 16, 25, 36)
     assert not outcome.cut_short

@@ -124,7 +124,12 @@ def shortfall_text(short: Shortfall, plan: FacetPlan) -> str:
     from coatings.design.relax import MORE_LAYERS
 
     wider = f"a window wider by {percent(short.miss)}"
-    if short.layers_that_meet is not None:
+    if short.guide_limit is not None:
+        help_with = (
+            f"nothing but {wider}: the guide limits R to {percent(short.guide_limit)}, whatever the "
+            "number of layers; a larger mode reflects more"
+        )
+    elif short.layers_that_meet is not None:
         help_with = f"max_layers = {short.layers_that_meet}, or {wider}"
     elif plan.searched and not plan.cut_short:
         tried = plan.task.limits.most_layers + MORE_LAYERS

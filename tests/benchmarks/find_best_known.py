@@ -1,6 +1,6 @@
 """Finds the best stacks of `design_problems` by brute force and stores them in best_known.json.
 
-    python tests/benchmarks/find_best_known.py [NAME...]
+    PYTHONPATH=tests/design python tests/benchmarks/find_best_known.py [NAME...]
 
 It shares the film kernel with the product, for speed, and nothing of its search: scipy's differential
 evolution over all thicknesses of every order of films, from several seeds, on the smoothed yield
@@ -13,11 +13,10 @@ from __future__ import annotations
 import json
 import sys
 import time
+from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 from itertools import pairwise, product
 from pathlib import Path
-
-sys.path.append(str(Path(__file__).parents[1] / "design"))
 
 import numpy as np
 from design_problems import PROBLEMS, DesignProblem
@@ -25,7 +24,7 @@ from films_in_numpy import Chips, Reals, Twin
 from scipy.optimize import differential_evolution, minimize
 from scipy.special import expit
 
-from coatings.optics import Scene, response, reflectance
+from coatings.optics import Scene, reflectance, response
 
 STORE = Path(__file__).with_name("best_known.json")
 JUDGES = 100_000
@@ -78,9 +77,9 @@ class Objective:
         return least
 
 
-def orders(problem: DesignProblem, count: int, side: str = "front"):
+def orders(problem: DesignProblem, count: int) -> Iterator[tuple[str, ...]]:
     """Every order of the palette's films without equal neighbours."""
-    palette = problem.recipe.facets[side].palette
+    palette = problem.recipe.front.palette or ()
     for names in product(palette, repeat=count):
         if all(a != b for a, b in pairwise(names)):
             yield names
@@ -97,55 +96,60 @@ def half_width(problem: DesignProblem) -> float:
     return min(widths)
 
 
+def errs(problem: DesignProblem) -> bool:
+    """Whether any thickness errs: then the yield counts, else the margin."""
+    process = problem.recipe.process_for("front")
+    return bool(process.run_percent or process.layer_percent or process.thickness_sigma_nm)
+
+
 def best_of_order(problem: DesignProblem, names: tuple[str, ...], seed: int) -> tuple[float, Reals]:
     """The best stack of one order of films from one seed; the score is the merit under 4096 chips."""
-    facet = problem.recipe.front
+    facet, count = problem.recipe.front, len(names)
     widest = max((w.band_nm[1] - w.band_nm[0]) for w in facet.windows)
-    twin = Twin.of(problem.recipe, names, step_nm=max(widest / 14, 1.0))
-    fails = any(problem.recipe.process_for("front").index.values()) or THICKNESS(problem)
     limits = [facet.layer_limits_nm(name) for name in names]
-    coarse = Objective(
-        twin, twin.chips(runs=512, seed=seed) if fails else None, 0.1 * half_width(problem)
-    )
-    fine_grid = Twin.of(problem.recipe, names, step_nm=2.0 if fails else 1.0)
-    fine = Objective(
-        fine_grid,
-        fine_grid.chips(runs=4096, seed=seed + 9) if fails else None,
-        0.03 * half_width(problem),
-    )
     total = facet.total_nm or np.inf
+    draws = 512 if count <= 4 else 128
+    rough = Twin.of(problem.recipe, names, step_nm=max(widest / 14, 1.0))
+    close = Twin.of(problem.recipe, names, step_nm=2.0 if errs(problem) else 1.0)
+    coarse, fine = (
+        Objective(
+            twin,
+            twin.chips(runs=runs, seed=seed) if errs(problem) else None,
+            share * half_width(problem),
+        )
+        for twin, runs, share in ((rough, draws, 0.1), (close, 8 * draws, 0.03))
+    )
 
-    def fined(score):
+    def inside_total(score: Objective) -> Callable[[Reals], float]:
         return lambda nm: score(nm) + 10.0 * max(nm.sum() / total - 1.0, 0.0)
 
     found = differential_evolution(
-        fined(coarse),
+        inside_total(coarse),
         limits,
         rng=seed,
-        popsize=18,
-        maxiter=70 + 60 * len(names),
+        popsize=18 if count <= 4 else 8,
+        maxiter=70 + 60 * min(count, 6),
         tol=1e-7,
         polish=False,
         init="sobol",
         mutation=(0.4, 0.9),
         recombination=0.8,
     )
-    low, high = np.array(limits).T
     best = minimize(
-        fined(fine),
+        inside_total(fine),
         found.x,
         method="Nelder-Mead",
         bounds=limits,
-        options={"maxiter": (120 if fails else 600) * len(names), "xatol": 1e-3, "fatol": 1e-7},
+        options={
+            "maxiter": (120 if errs(problem) else 600) * count,
+            "adaptive": count > 4,
+            "xatol": 1e-3,
+            "fatol": 1e-7,
+        },
     )
+    low, high = np.array(limits).T
     nm = np.clip(best.x, low, high)
     return -fine(nm), nm
-
-
-def THICKNESS(problem: DesignProblem) -> bool:
-    """Whether any thickness errs."""
-    process = problem.recipe.process_for("front")
-    return bool(process.run_percent or process.layer_percent or process.thickness_sigma_nm)
 
 
 def best_known(problem: DesignProblem, count: int) -> dict[str, object]:
@@ -159,13 +163,12 @@ def best_known(problem: DesignProblem, count: int) -> dict[str, object]:
     judged = []
     for _, names, nm in found[:3]:
         twin = Twin.of(problem.recipe, names)
-        fails = THICKNESS(problem)
         judged.append(
             {
                 "films": names,
                 "nm": [round(float(t), 3) for t in nm],
                 "margin": float(twin.margin(nm[None])[0]),
-                "yield": common_yield(twin, nm) if fails else None,
+                "yield": common_yield(twin, nm) if errs(problem) else None,
             }
         )
     return max(judged, key=lambda one: one["margin"] if one["yield"] is None else one["yield"])

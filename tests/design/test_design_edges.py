@@ -35,7 +35,12 @@ CASES = {
     "total of one layer": ({**TWO, "layer_nm": [40.0, 300.0], "total_nm": 79.0}, [AR], ION, {}),
     "no limits": ({"palette": ["L", "H"], "max_layers": 2}, [AR], ION, {}),
     "one wavelength": (TWO, [{"at_most": 0.001, "band_nm": [976.0, 976.0]}], ION, {}),
-    "window far away": (TWO, [{"at_most": 0.1}, {"at_most": 0.2, "band_nm": [400.0, 410.0]}], ION, {}),
+    "window far away": (
+        TWO,
+        [{"at_most": 0.1}, {"at_most": 0.2, "band_nm": [400.0, 410.0]}],
+        ION,
+        {},
+    ),
     "sister chip": (TWO, [AR, {"at_most": 0.02, "index": 3.6}], ION, {}),
     "a million to one": (TWO, [{"at_most": 1e-6}], ION, {}),
     "nothing at all": (TWO, [{"at_most": 0.0}], ION, {}),
@@ -182,7 +187,11 @@ def test_the_contradiction_is_split_in_half():
         {"layers": [{"material": "H", "nm": 100.0}, {"material": "H", "nm": 20.0}]},
         {"base": [{"material": "L", "nm": 100.0}]},
         {"cap": [{"material": "L", "nm": 100.0}]},
-        {"layers": [], "base": [{"material": "X", "nm": 5.0}], "cap": [{"material": "L", "nm": 50.0}]},
+        {
+            "layers": [],
+            "base": [{"material": "X", "nm": 5.0}],
+            "cap": [{"material": "L", "nm": 50.0}],
+        },
         {},
     ],
 )
@@ -202,9 +211,7 @@ def test_facets_that_are_given(facet, process):
 def test_three_and_four_films_do_not_explode(films):
     palette = ["L", "M", "H", "N"][:films]
     facet = {"palette": palette, "max_layers": 12, "layer_nm": [15.0, 400.0]}
-    made = recipe(
-        facet, {"at_least": 0.95}, process=ION, materials={"N": {"index": 1.9, "k": 0.0}}
-    )
+    made = recipe(facet, {"at_least": 0.95}, process=ION, materials={"N": {"index": 1.9, "k": 0.0}})
     plan = plan_facets(made, sides=("front",), seed=0, workers=2)["front"]
     assert_sound(made, plan)
     assert plan.taken.yields.chips > 0.99

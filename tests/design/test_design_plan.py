@@ -126,7 +126,7 @@ def test_claimed_margins_and_yields_agree_with_the_twin(front):
 
 def test_a_wrong_error_would_be_noticed(front):
     """The control of the test above: an index error that is twice as large is seen in a yield."""
-    made, plan = front
+    _, plan = front
     more = recipe(FACET, TARGET, process={**ERRORS, "index": {"L": 0.02, "H": 0.02}})
     gaps = []
     for each in plan.stacks:

@@ -112,8 +112,7 @@ def exhaustive(names, grid, wavelength, *, best):
     flat = np.argpartition(worst.ravel(), best)[:best]
     inner, outer = np.unravel_index(flat, worst.shape)
     thick = np.stack(np.meshgrid(grid, grid, indexing="ij"), axis=-1).reshape(-1, 2)
-    stacks = thick[outer] if len(names) == 2 else np.hstack([thick[inner], thick[outer]])
-    return stacks
+    return thick[outer] if len(names) == 2 else np.hstack([thick[inner], thick[outer]])
 
 
 def reflectance(field):

@@ -8,8 +8,8 @@ from design_recipes import recipe
 from films_in_numpy import Twin
 
 from coatings.design import starts
-from coatings.design.model import FacetModel, facet_frame
 from coatings.design.limits import run_limits
+from coatings.design.model import FacetModel, facet_frame
 from coatings.design.windows import facet_goal
 from coatings.facets import film_rows
 from coatings.optics import response

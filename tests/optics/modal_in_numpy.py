@@ -1,12 +1,13 @@
 """The slow, obvious twin of `ModalFacet`: one stack, one wavelength, no closed forms.
 
-The mode's profile is summed over x by Gauss's rule at every q, its two tails apart; y comes from the textbook matrices;
-e, c and d are three sums along another contour than the product's, a plain parabola below the axis.
+The mode's profile is summed over x by Gauss's rule at every q, its two tails apart; y comes from the
+textbook matrices; e, c and d are three sums along another contour than the product's, a plain parabola below the axis.
 Thicknesses may be complex, for derivatives by Cauchy's integral.
 """
 
-import numpy as np
+from itertools import pairwise
 
+import numpy as np
 
 LONGEST_PIECE = 0.4
 FARTHEST = 60.0
@@ -22,7 +23,7 @@ def _pieces(mode):
     at = mode.guide.position[0]
     x0, w0 = np.polynomial.legendre.leggauss(24)
     xs, ws, eps = [], [], []
-    for j, (low, high) in enumerate(zip(at[:-1], at[1:], strict=True)):
+    for j, (low, high) in enumerate(pairwise(at)):
         edges = np.linspace(low, high, max(1, int(np.ceil((high - low) / LONGEST_PIECE))) + 1)
         half = 0.5 * np.diff(edges)[:, None]
         xs.append((0.5 * (edges[:-1] + edges[1:])[:, None] + half * x0).ravel())
@@ -101,8 +102,8 @@ class Twin:
     def slope(self, films, thickness_nm, layer, *, radius_nm=3.0, outside=1.0):
         """dr/d thickness by Cauchy's integral over a circle of complex thicknesses."""
         total = 0.0
-        for turn in np.exp(2j * np.pi * np.arange(16) / 16):
+        for turn in np.exp(2j * np.pi * np.arange(8) / 8):
             nm = np.array(thickness_nm, complex)
             nm[layer] += radius_nm * turn
             total += self.reflection(films, nm, outside=outside) / turn
-        return total / (16 * radius_nm)
+        return total / (8 * radius_nm)

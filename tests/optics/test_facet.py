@@ -4,13 +4,13 @@ import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
+from modal_in_numpy import Twin
 
 from coatings.errors import ArrayError, InputError
 from coatings.optics import reflection
 from coatings.optics.facet import ModalFacet
 from coatings.optics.guide import Guide, fundamental, modes
 from coatings.optics.radiated import thrown_back
-from modal_in_numpy import Twin
 
 BOTH = pytest.mark.parametrize("tm", [False, True])
 NONE = np.empty((1, 0))
@@ -246,12 +246,9 @@ def test_doubling_the_nodes(tm):
     for index, um in GUIDES.values():
         coarse, fine = (facet(index, um, 1310.0, tm=tm, fine=n) for n in (1, 2))
         for film, nm in STACKS.values():
-            arguments = (np.reshape(nm, (1, -1)).astype(float),)
-            film = np.array(film, int)
-            change = coarse.reflection(*arguments, film=film) - fine.reflection(
-                *arguments, film=film
-            )
-            assert np.abs(change).max() < 1e-6
+            stack, kinds = np.reshape(nm, (1, -1)).astype(float), np.array(film, int)
+            r = coarse.reflection(stack, film=kinds)
+            assert np.abs(r - fine.reflection(stack, film=kinds)).max() < 1e-6
 
 
 @BOTH

@@ -39,7 +39,7 @@ def test_arrays(change, message):
 @pytest.mark.parametrize("tm", [False, True])
 def test_no_core(tm):
     guide = Guide([976.0], [3.3, 3.2, 3.3], [0.3])
-    with pytest.raises(InputError, match="guide: has no bound T. mode at 976 nm: no layer within"):
+    with pytest.raises(InputError, match=r"guide: has no bound T. mode at 976 nm: no layer within"):
         fundamental(guide, tm=tm)
 
 
@@ -72,7 +72,7 @@ def test_the_tail_of_a_weak_guide():
 @pytest.mark.parametrize("tm", [False, True])
 def test_twins(tm):
     layers = [3.2, 3.4, 3.2, 3.4, 3.2]
-    with pytest.raises(InputError, match="guide: has twin guides: .* at 976 nm.*give one of them"):
+    with pytest.raises(InputError, match=r"guide: has twin guides: .* at 976 nm.*give one of them"):
         fundamental(Guide([976.0], layers, [0.3, 6.0, 0.3]), tm=tm)
     assert fundamental(Guide([976.0], layers, [0.3, 1.0, 0.3]), tm=tm).n_eff[0].real > 3.2
 

@@ -4,10 +4,10 @@ from functools import cache
 
 import numpy as np
 import pytest
+from rigorous_facet import Mesh, RigorousGuide
 
 from coatings.optics.facet import ModalFacet
 from coatings.optics.guide import Guide, fundamental
-from rigorous_facet import Mesh, RigorousGuide
 
 GUIDES = {
     "976 weak": ([3.45, 3.47, 3.45], [0.4], 976.0),

@@ -2,9 +2,9 @@
 
 import numpy as np
 import pytest
+from guide_in_40_digits import effective_index, newton_correction
 
 from coatings.optics.guide import Guide, fundamental, modes
-from guide_in_40_digits import effective_index, newton_correction
 
 GUIDES = {
     "weak": ([3.30, 3.32, 3.30], [0.3], 976.0),
