@@ -126,8 +126,8 @@ def shortfall_text(short: Shortfall, plan: FacetPlan) -> str:
     wider = f"a window wider by {percent(short.miss)}"
     if short.guide_limit is not None:
         help_with = (
-            f"nothing but {wider}: the guide limits R to {percent(short.guide_limit)}, whatever the "
-            "number of layers; a larger mode reflects more"
+            f"the guide limits R to {percent(short.guide_limit)} or so: the rest leaves the mode, and more "
+            f"layers do not bring it back; a wider mode, or {wider}"
         )
     elif short.layers_that_meet is not None:
         help_with = f"max_layers = {short.layers_that_meet}, or {wider}"

@@ -22,8 +22,8 @@ class Shortfall:
     """The nearest stack's miss: by how much reflectance, in which window (number), at which wavelength,
     above or below; and the layer count up to ``MORE_LAYERS`` more that meets the windows, if any.
 
-    ``guide_limit`` is the reflectivity of the guided mode before an ideal mirror of the same films, where that
-    is below what the window asks for: then no number of layers helps.
+    ``guide_limit`` is the reflectivity of the guided mode before a quarter-wave mirror without end of the same
+    films, or what was reached where that is more; None where it is not below what the window asks for.
     """
 
     miss: float
@@ -45,7 +45,9 @@ def shortfall(plan: FacetPlan) -> Shortfall:
     point = constraints.point[worst]
     bound, sign = float(constraints.bound[worst]), float(constraints.sign[worst])
     is_floor = sign < 0.0 and plan.searched
+    reached = bound - sign * float(slack[worst])
     limit = _guide_limit(task, int(point), below=bound) if is_floor else None
+    limit = None if limit is None else max(limit, reached)
     may_search = plan.searched and not plan.cut_short and limit is None
     return Shortfall(
         miss=-float(slack[worst]),
@@ -53,7 +55,7 @@ def shortfall(plan: FacetPlan) -> Shortfall:
         wavelength_nm=float(task.model.goal.scene.wavelength_nm[point]),
         quantity="A" if constraints.absorption[worst] else "R",
         bound=bound,
-        reached=bound - sign * float(slack[worst]),
+        reached=reached,
         layers_that_meet=_layers_that_meet(task) if may_search else None,
         guide_limit=limit,
     )

@@ -20,6 +20,7 @@ NAMES = (
     "modal_gain_per_cm",
 )
 _BEYOND_SIGMAS = 2.0
+_ROUND_OFF = 1e-9
 
 
 @dataclass(frozen=True)
@@ -139,7 +140,7 @@ def refuse_unphysical(found: tuple[Quantity, ...]) -> None:
     """InputError where loss or efficiency lies outside what is possible beyond its scatter."""
     loss, efficiency = found[0], found[1]
     problems = []
-    if loss.value < -_BEYOND_SIGMAS * (loss.sigma or 0.0):
+    if loss.value < -_ROUND_OFF - _BEYOND_SIGMAS * (loss.sigma or 0.0):
         problems.append(
             Problem(
                 "slope_W_per_A",
@@ -148,7 +149,7 @@ def refuse_unphysical(found: tuple[Quantity, ...]) -> None:
                 "counts both facets on every chip",
             )
         )
-    if efficiency.value > 1.0 + _BEYOND_SIGMAS * (efficiency.sigma or 0.0):
+    if efficiency.value > 1.0 + _ROUND_OFF + _BEYOND_SIGMAS * (efficiency.sigma or 0.0):
         problems.append(
             Problem(
                 "slope_W_per_A",
@@ -181,7 +182,7 @@ def calibration_notes(
     notes = [f"Outlier {'kept' if kept else 'left out'}: {outlier}." for outlier in outliers]
     for name, quantity in zip(NAMES, found, strict=True):
         bound = bound_of(name, quantity.value)
-        if bound is not None:
+        if bound is not None and abs(quantity.value - bound) > _ROUND_OFF:
             notes.append(
                 f"{name} comes out at {quantity}: past {bound:g}, but within the chips' scatter "
                 f"of it; the section to paste holds {bound:g}."

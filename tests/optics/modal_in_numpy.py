@@ -1,7 +1,8 @@
 """The slow, obvious twin of `ModalFacet`: one stack, one wavelength, no closed forms.
 
 The mode's profile is summed over x by Gauss's rule at every q, its two tails apart; y comes from the
-textbook matrices; e, c and d are three sums along another contour than the product's, a plain parabola below the axis.
+textbook matrices; e, c and d are three sums along another contour than the product's, a plain
+parabola below the axis.
 Thicknesses may be complex, for derivatives by Cauchy's integral.
 """
 
