@@ -151,8 +151,12 @@ def _facet_rows(planned: Planned, side: FacetName, plan: FacetPlan) -> Iterator[
     R = float(facet_spectrum(recipe, side, wavelength_nm=at, searched=stack).R[0])
     margin = percent(abs(taken.margin))
     spare = f"{margin} to spare" if taken.margin >= 0 else f"[bold]OUTSIDE by {margin}[/bold]"
-    windows = escape("; ".join(window_text(window) for window in facet.windows))
-    yield side_label(side), f"{windows}: R {percent(R)} at {at[0]:g} nm, {spare}"
+    light = f"R {percent(R)} at {at[0]:g} nm, {spare}"
+    windows = [escape(window_text(window)) for window in facet.windows]
+    if len(windows) == 1:
+        yield side_label(side), f"{windows[0]}: {light}"
+    else:
+        yield from zip([side_label(side), *[""] * len(windows)], [*windows, light], strict=True)
     yield "", escape(layers_text(stack) + _around(facet))
     y = taken.yields
     if not plan.task.errors.none:

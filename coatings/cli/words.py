@@ -40,7 +40,9 @@ def window_text(window: Window) -> str:
     first, last = window.band_nm
     band = f"{first:g} nm" if first == last else f"{first:g}-{last:g} nm"
     sister = "" if window.index is None else f", index {window.index:g}"
-    return f"{', '.join(parts)} over {band}{sister}"
+    film = " for the film alone" if window.of == "coating" else ""
+    both = " in TE and TM" if window.polarization == "both" else ""
+    return f"{', '.join(parts)} over {band}{both}{sister}{film}"
 
 
 def watts(power_W: float) -> str:

@@ -9,19 +9,18 @@ import numpy as np
 from coatings.design.limits import RunLimits
 from coatings.facets import FloatArray, IntArray
 
-SWEEPS = 12
-
 Score = Callable[[FloatArray], FloatArray]  # stacks (S, L) [nm] -> (S,), higher is better
 
 
 def best_ordered(
-    nm: FloatArray, *, film: IntArray, limits: RunLimits, score: Score, breadth: int = 1
+    nm: FloatArray, *, film: IntArray, limits: RunLimits, score: Score, breadth: int, sweeps: int
 ) -> FloatArray | None:
     """Best stack (L,) [nm] on the grid of ordered thicknesses around ``nm``. None where no stack of the
     grid around keeps the limits.
 
     The ``breadth`` best roundings are moved on together, by single steps of every layer and opposite and
-    equal steps of every two, for as long as one of their neighbours is among the ``breadth`` best.
+    equal steps of every two, for as long as one of their neighbours is among the ``breadth`` best, and at
+    most ``sweeps`` times.
     """
     best = _kept(_starting(nm, film, limits), limits, film)
     if not len(best):
@@ -29,7 +28,7 @@ def best_ordered(
     best, scores = _leading(best, score(best), breadth)
     moves = _moves(len(nm)) * limits.step_nm
     fresh = best
-    for _ in range(SWEEPS):
+    for _ in range(sweeps):
         near = _kept(limits.rounded(_around(fresh, moves), film=film), limits, film)
         near = near[~(near[:, None] == best[None]).all(axis=2).any(axis=1)]
         if not len(near):

@@ -81,7 +81,8 @@ SCREENED = 12  # orders of films that get the full search where there are more
 SCREEN_STARTS = 24  # random starts an order while screening
 SCREEN_POINTS = 7  # and wavelengths a window
 LISTED = 3  # designs a layer count that are finished with many draws and judged
-BREADTH = 12  # roundings that are followed on the grid where the margin is sought
+CLOSELY = {"breadth": 12, "sweeps": 12}  # how the grid of ordered thicknesses is searched
+CURSORILY = {"breadth": 1, "sweeps": 2}
 FINE_LOSS = 0.1  # and how much less yield than the best they may have
 FINE_STAGES = (0.15, 0.05)
 
@@ -190,7 +191,7 @@ def _by_margin(task: Task, candidate: _Candidate) -> _Candidate | None:
         return task.model.margin(stacks, film=film)
 
     flattest = minimax(task.model, candidate.nm, film=film, limits=limits)
-    nm = best_ordered(flattest, film=film, limits=limits, score=score, breadth=BREADTH)
+    nm = best_ordered(flattest, film=film, limits=limits, score=score, **CLOSELY)
     return None if nm is None else _Candidate(film, nm, float(score(nm[None])[0]))
 
 
@@ -233,7 +234,10 @@ def _ordered_by_yield(
     def score(stacks: FloatArray) -> FloatArray:
         return np.array([smooth.merit(row, tau=tau) for row in stacks])
 
-    nm = best_ordered(finest, film=film, limits=limits, score=score)
+    # where a run errs by more than a step, the yield hardly changes from step to step
+    errs_nm = task.errors.thickness_nm(finest)
+    effort = CURSORILY if limits.step_nm < 0.5 * errs_nm else CLOSELY
+    nm = best_ordered(finest, film=film, limits=limits, score=score, **effort)
     return None if nm is None else _Candidate(film, nm, float(score(nm[None])[0]))
 
 

@@ -45,6 +45,11 @@ class RunErrors:
         scalars = (self.run, self.layer, self.position, self.thickness_sigma_nm, self.chip_index)
         return not any(scalars) and not self.index.any()
 
+    def thickness_nm(self, nm: FloatArray) -> float:
+        """Mean one-sigma error [nm] of the layers (L,) of an ordered stack."""
+        share = np.hypot(np.hypot(self.run, self.layer), self.position)
+        return float(np.hypot(share * nm, self.thickness_sigma_nm).mean())
+
 
 @dataclass(frozen=True)
 class Draws:

@@ -15,7 +15,7 @@ from numpy.typing import NDArray
 
 from coatings.facets import FloatArray, IntArray, light_on, window_views
 from coatings.optics import Scene
-from coatings.optics.light import Light, joined
+from coatings.optics.light import Light, PlaneLight, joined
 from coatings.optics.nearby import near, rough
 from coatings.recipe import FacetName, Recipe, Window
 
@@ -191,7 +191,7 @@ def facet_goal(recipe: Recipe, side: FacetName, *, plane: bool = False) -> Goal:
     limits = np.array([bounds(facet.windows[number]) for number in numbers])
     low, high, absorption_high = np.repeat(limits, counts, axis=0).T.copy()
     return Goal(
-        light=joined(lights),
+        light=_in_one(joined(lights)),
         films=facet.films,
         low=low,
         high=high,
@@ -199,6 +199,11 @@ def facet_goal(recipe: Recipe, side: FacetName, *, plane: bool = False) -> Goal:
         window=np.repeat(np.array(numbers, dtype=np.intp), counts),
         constraints=Constraints.of(low, high, absorption_high),
     )
+
+
+def _in_one(light: Light) -> Light:
+    """Plane waves of several windows in one scene: one call of the kernel for all of them."""
+    return PlaneLight(light.plane) if light.model == "plane" else light
 
 
 def bounds(window: Window) -> tuple[float, float, float]:

@@ -18,6 +18,7 @@ from coatings.documents.plots import (
     Band,
     draw_gates,
     draw_layers,
+    draw_plane_wave,
     draw_power,
     draw_spectrum,
     draw_yields,
@@ -47,9 +48,11 @@ def spectrum_picture(
             spectrum_ax = figure.add_subplot(grid[2 * row + 1])
             _layers(layers_ax, recipe, side, stacks.get(side))
             draw_spectrum(spectrum_ax, curve.spectrum, side=side, band=bands.get(side))
+            if curve.plane_spectrum is not None:
+                draw_plane_wave(spectrum_ax, curve.plane_spectrum)
             _frame_windows(spectrum_ax, [w.window for w in curve.windows])
             draw_gates(spectrum_ax, [w.window for w in curve.windows])
-            if side in bands:
+            if side in bands or curve.plane_spectrum is not None:
                 spectrum_ax.legend(loc="lower right", bbox_to_anchor=(1.0, 0.99), ncols=3,
                                    borderaxespad=0.0)  # fmt: skip
         return png(figure)

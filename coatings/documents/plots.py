@@ -54,6 +54,19 @@ def draw_spectrum(
     return line
 
 
+def draw_plane_wave(ax: Axes, spectrum: FacetSpectrum) -> Line2D:
+    """R of the plane wave in percent, for comparison with the mode's."""
+    (line,) = ax.plot(
+        spectrum.wavelength_nm,
+        100 * spectrum.R,
+        color=QUIET,
+        lw=1.0,
+        ls=(0, (4, 3)),
+        label="plane wave",
+    )
+    return line
+
+
 def draw_gates(ax: Axes, windows: Sequence[Window]) -> list[Rectangle]:
     """Windows as gates: bars that the curve must pass between, below or above."""
     bars = []

@@ -116,7 +116,7 @@ def straight_lines(points: Points) -> Fitted:
     sources[0] = by_b @ b_cov @ by_b.T
     sources[1] = by_c @ c_cov @ by_c.T
     sources[3] = _from_reflectance(points, parameters)
-    return Fitted(parameters, sources, points.size - 2, _scatter(b_rest, c_rest, points.size - 2))
+    return Fitted(parameters, sources, points.size - 2, scatter_of(b_rest, c_rest, points.size - 2))
 
 
 def refuse_impossible_lines(points: Points, slope_line: FloatArray, line: FloatArray) -> None:
@@ -227,7 +227,7 @@ def joint_fit(points: Points) -> Fitted:
     by_slope, by_threshold = derivatives(points, p)
     inverse = np.linalg.pinv(np.concatenate([by_slope, by_threshold]))
     S, T = inverse[:, : points.size], inverse[:, points.size :]
-    scatter = _scatter(*residuals(points, p), points.size - 2)
+    scatter = scatter_of(*residuals(points, p), points.size - 2)
     slope, threshold, correlation = scatter
     mixed = correlation * slope * threshold * (S @ T.T)
     sources = np.stack(
@@ -271,7 +271,7 @@ def _from_reflectance(points: Points, p: FloatArray) -> FloatArray:
     return np.outer(by_rho, by_rho) * points.rho_sigma**2
 
 
-def _scatter(slopes: FloatArray, thresholds: FloatArray, dof: int) -> tuple[float, float, float]:
+def scatter_of(slopes: FloatArray, thresholds: FloatArray, dof: int) -> tuple[float, float, float]:
     """Relative standard deviations and their correlation; NaN without degrees of freedom."""
     if dof < 1:
         return np.nan, np.nan, np.nan

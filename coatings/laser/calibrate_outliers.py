@@ -9,7 +9,14 @@ import numpy as np
 from numpy.typing import NDArray
 
 from coatings.errors import InputError
-from coatings.laser.calibrate_model import Fitted, Points, derivatives, joint_fit, residuals
+from coatings.laser.calibrate_model import (
+    Fitted,
+    Points,
+    derivatives,
+    joint_fit,
+    residuals,
+    scatter_of,
+)
 from coatings.laser.checks import FloatArray
 from coatings.laser.student import t_quantile
 
@@ -167,15 +174,16 @@ def leave_one_length_out(points: Points, full: Fitted) -> tuple[LeftOut, ...]:
     """The joint fit without each length in turn; empty with fewer than three lengths.
 
     The move's variance is that of the smaller set less that of the full one (the full fit is the
-    efficient one), with the full fit's scatter. Hausman, Econometrica 46, 1251 (1978) (from
-    memory). Lengths whose absence leaves lines without meaning are passed over.
+    efficient one): Hausman, Econometrica 46, 1251 (1978) (from memory). The scatter is that of
+    chips of one length where there are such chips, because a length that does not fit widens the
+    scatter about the lines. Lengths whose absence leaves lines without meaning are passed over.
     """
     groups = length_groups(points.length_cm)
     numbers = np.unique(groups)
     if numbers.size < 3 or full.dof < 1:
         return ()
-    share = 0.5 * _FALSE_ALARM / (4 * numbers.size)
-    limit = t_quantile(1.0 - share, full.dof)
+    scatter, dof = _own_scatter(points, full, groups)
+    limit = t_quantile(1.0 - 0.5 * _FALSE_ALARM / (4 * numbers.size), dof)
     rows = []
     for number in numbers:
         out = groups == number
@@ -183,33 +191,51 @@ def leave_one_length_out(points: Points, full: Fitted) -> tuple[LeftOut, ...]:
             rest = joint_fit(points.at(~out))
         except InputError:
             continue
-        rows.append(_left_out(points, full, rest, out, limit))
+        moved = rest.parameters - full.parameters
+        without, all_in = (
+            _variance(part, full.parameters, scatter) for part in (points.at(~out), points)
+        )
+        sigmas = _over_sigma(moved, without - all_in, tiny=1e-9 * without)
+        rows.append(
+            LeftOut(
+                length_um=float(points.length_cm[out].mean() * 1e4),
+                chips=int(np.count_nonzero(out)),
+                parameters=_four(_natural(rest.parameters)),
+                shift_sigmas=_four(sigmas),
+                matters=bool(np.any((np.abs(sigmas) > limit) & (np.abs(moved) > _LEAST_DEVIATION))),
+            )
+        )
     return tuple(rows)
 
 
-def _left_out(
-    points: Points, full: Fitted, rest: Fitted, out: NDArray[np.bool_], limit: float
-) -> LeftOut:
-    moved = rest.parameters - full.parameters
-    without = _scatter_variance(points.at(~out), full)
-    variance = without - _scatter_variance(points, full)
-    sigmas = np.divide(
-        moved, np.sqrt(np.abs(variance)), out=np.zeros(4), where=variance > 1e-9 * without
-    )
-    return LeftOut(
-        length_um=float(points.length_cm[out].mean() * 1e4),
-        chips=int(np.count_nonzero(out)),
-        parameters=_four(_natural(rest.parameters)),
-        shift_sigmas=_four(sigmas),
-        matters=bool(np.any((np.abs(sigmas) > limit) & (np.abs(moved) > _LEAST_DEVIATION))),
-    )
+def _over_sigma(moved: FloatArray, variance: FloatArray, *, tiny: FloatArray) -> FloatArray:
+    """Moves over their standard errors; zero where nothing could move."""
+    seen = variance > tiny
+    return np.divide(moved, np.sqrt(np.abs(variance)), out=np.zeros_like(moved), where=seen)
 
 
-def _scatter_variance(points: Points, full: Fitted) -> FloatArray:
-    """Variance of p for these chips with the full fit's scatter and parameters; R left out."""
-    inverse = np.linalg.pinv(np.concatenate(derivatives(points, full.parameters)))
+def _own_scatter(
+    points: Points, full: Fitted, groups: NDArray[np.intp]
+) -> tuple[tuple[float, float, float], int]:
+    """Scatter of chips about the mean of their length, and its degrees of freedom."""
+    members = np.bincount(groups)
+    dof = points.size - members.size
+    if dof < 2:
+        return full.scatter, full.dof
+    slope, threshold = (
+        rest - (np.bincount(groups, rest) / members)[groups]
+        for rest in residuals(points, full.parameters)
+    )
+    return scatter_of(slope, threshold, dof), dof
+
+
+def _variance(
+    points: Points, parameters: FloatArray, scatter: tuple[float, float, float]
+) -> FloatArray:
+    """Variance of p for these chips with a given scatter; R left out."""
+    inverse = np.linalg.pinv(np.concatenate(derivatives(points, parameters)))
     S, T = inverse[:, : points.size], inverse[:, points.size :]
-    slope, threshold, correlation = full.scatter
+    slope, threshold, correlation = scatter
     variance: FloatArray = (
         slope**2 * np.sum(S * S, axis=1)
         + threshold**2 * np.sum(T * T, axis=1)

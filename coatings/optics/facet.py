@@ -42,11 +42,12 @@ to 0.22 and 1e-4 to 0.1; 1.5e-3 beyond, to 0.4. R of an antireflection coating w
 from __future__ import annotations
 
 from dataclasses import dataclass, field
-from typing import NamedTuple
+from typing import Literal, NamedTuple
 
 import numpy as np
 from numpy.typing import ArrayLike
 
+from coatings.errors import InputError, Problem
 from coatings.optics.arrays import Complexes, Reals, check_finite, check_shape, numbers, parts
 from coatings.optics.batch import Batch
 from coatings.optics.contour import Contour
@@ -55,11 +56,13 @@ from coatings.optics.guide import shifted_mode
 from coatings.optics.guide_modes import GuidedMode
 from coatings.optics.modal_kernel import modal
 from coatings.optics.modal_response import Found, ModalResponse
+from coatings.optics.power_slopes import power_gradient
 from coatings.optics.radiated import sent_out, thrown_back
 from coatings.optics.scene import Scene
 from coatings.optics.shifts import mix_of, nodes_of, span_of
 from coatings.optics.threads import share
 
+Power = Literal["R", "T", "S", "A"]
 R_ERRORS = ((0.1 + 1e-9, 1e-4), (0.22 + 1e-9, 4e-4))
 WORST_R_ERROR = 1.5e-3
 
@@ -212,13 +215,46 @@ class ModalFacet:
         film: ArrayLike,
         film_shift: ArrayLike | None = None,
         incident_shift: ArrayLike | None = None,
+        of: Power = "R",
     ) -> tuple[Reals, Reals]:
-        """R of the mode (S, W) and d R / d thickness_nm (S, W, L) [1/nm], exact.
+        """R, T, S or A of the mode and its derivative with every thickness, exact.
 
-        Parameters and errors as for `response`.
+        Parameters
+        ----------
+        of : "R", "T", "S" or "A"
+            Which share. R costs less than two values; the others go stack by stack, some
+            milliseconds each.
+        thickness_nm, film, film_shift, incident_shift
+            As for `response`.
+
+        Returns
+        -------
+        value : array (S, W)
+        slope : array (S, W, L)
+            d value / d thickness_nm [1/nm].
+
+        Raises
+        ------
+        ArrayError
+            Naming the argument, the place and the value.
+        InputError
+            When ``of`` is none of the four, or a shifted guide has no such mode.
         """
-        found = self._run(self._batch(thickness_nm, film, film_shift, incident_shift), 1)
-        return found.r.real**2 + found.r.imag**2, found.slopes[:, 0]
+        if of not in {"R", "T", "S", "A"}:
+            raise InputError(Problem("of", f"got {of!r}; give one of R, T, S, A"))
+        batch = self._batch(thickness_nm, film, film_shift, incident_shift)
+        if of == "R":
+            found = self._run(batch, 1)
+            return found.r.real**2 + found.r.imag**2, found.slopes[:, 0]
+        if not batch.incident_shift.size:
+            return self._power_gradient(batch, of)
+        nodes = nodes_of(span_of(batch.incident_shift))
+        mix = mix_of(batch.incident_shift, nodes)
+        plain = batch._replace(incident_shift=np.empty(0))
+        each = [self.shifted(by)._power_gradient(plain, of) for by in nodes]
+        value = np.einsum("sv,vsw->sw", mix, np.stack([answer[0] for answer in each]))
+        slope = np.einsum("sv,vswl->swl", mix, np.stack([answer[1] for answer in each]))
+        return value, slope
 
     def weighted_gradient(
         self,
@@ -293,6 +329,23 @@ class ModalFacet:
         if self._lossless(batch):
             return ModalResponse(found.r, out, lambda: 1.0 - np.abs(found.r) ** 2 - out)
         return ModalResponse(found.r, out, lambda: thrown_back(self, batch, found))
+
+    def _power_gradient(self, batch: Batch, of: Power) -> tuple[Reals, Reals]:
+        found = self._run(batch, 4)
+        if of == "T":
+            return power_gradient(self, batch, found, back=False)
+        if of == "S" and not self._lossless(batch):
+            return power_gradient(self, batch, found, back=True)
+        out, out_slope = power_gradient(self, batch, found, back=False)
+        r, dr = found.r, found.slopes[:, 0] + 1j * found.slopes[:, 1]
+        rest = 1.0 - out - np.abs(r) ** 2
+        rest_slope = -out_slope - 2.0 * (r.conj()[:, :, None] * dr).real
+        if of == "S":
+            return rest, rest_slope
+        if self._lossless(batch):
+            return np.zeros_like(rest), np.zeros_like(rest_slope)
+        back, back_slope = power_gradient(self, batch, found, back=True)
+        return rest - back, rest_slope - back_slope
 
     def _lossless(self, batch: Batch) -> bool:
         media = (self.films, self.outside, self.mode.n_eff)

@@ -43,38 +43,41 @@ class Panels(NamedTuple):
 
 def sent_out(facet: ModalFacet, batch: Batch, found: Found) -> Reals:
     """T of every stack, (S, W)."""
-    return _adapt(facet, batch, found, back=False)
+    return integrate(facet, batch, found, back=False)[0]
 
 
 def thrown_back(facet: ModalFacet, batch: Batch, found: Found) -> Reals:
-    """S of every stack, (S, W), by its own integral.
+    """S of every stack, (S, W), by its own integral."""
+    return integrate(facet, batch, found, back=True)[0]
+
+
+def integrate(facet: ModalFacet, batch: Batch, found: Found, *, back: bool) -> tuple[Reals, Panels]:
+    """Power sent out or, ``back``, thrown back, (S, W), and the panels that it took.
 
     The films of a mirror hold sharp resonances beyond n_out, where nothing leaves: panels are
     halved where halving changes anything.
     """
-    return _adapt(facet, batch, found, back=True)
-
-
-def _adapt(facet: ModalFacet, batch: Batch, found: Found, *, back: bool) -> Reals:
     stacks, points, _ = batch.shape
     sides = 2 if back else 1
     count = sides * points
     place, side = np.tile(np.arange(points), sides), np.repeat(np.arange(sides), points)
     panels = Panels(place, side, np.zeros(count), np.ones(count))
-    power = np.zeros((stacks, points))
+    power, settled = np.zeros((stacks, points)), []
     whole = _integrals(facet, batch, found, panels, back=back)
     for halving in range(MOST_HALVINGS):
         both = panels.halves(np.ones(panels.place.size, np.bool_))
         parts = _integrals(facet, batch, found, both, back=back)
         lower, upper = np.split(parts, 2, axis=1)
         change = np.abs(lower + upper - whole).max(axis=0)
-        open_ = change > TOLERANCE if halving < MOST_HALVINGS - 1 else change < 0.0
-        np.add.at(power.T, panels.place[~open_], (lower + upper)[:, ~open_].T)
-        if not open_.any():
+        unsettled = (change > TOLERANCE) & (halving < MOST_HALVINGS - 1)
+        settled.append(panels.halves(~unsettled))
+        np.add.at(power.T, panels.place[~unsettled], (lower + upper)[:, ~unsettled].T)
+        if not unsettled.any():
             break
-        panels = panels.halves(open_)
-        whole = np.concatenate([lower[:, open_], upper[:, open_]], axis=1)
-    return power
+        panels = panels.halves(unsettled)
+        whole = np.concatenate([lower[:, unsettled], upper[:, unsettled]], axis=1)
+    columns = zip(*settled, strict=True)
+    return power, Panels(*(np.concatenate(column) for column in columns))
 
 
 def _integrals(
@@ -82,7 +85,7 @@ def _integrals(
 ) -> Reals:
     """Integral over each panel, (S, P)."""
     mode, place = facet.mode, panels.place
-    q, weight = _real_nodes(mode, facet.outside, panels)
+    q, weight = real_nodes(mode, facet.outside, panels)
     places = Places.at(
         q,
         facet.plane.wavelength_nm[place],
@@ -91,7 +94,7 @@ def _integrals(
         outside=facet.outside[place],
         tm=mode.tm,
     )
-    products = _products(mode, q, weight, place)
+    products = real_products(mode, q, weight, place)
     r, tilt = found.r[:, place], found.tilt[:, place]
     power = np.zeros(r.shape)
 
@@ -113,7 +116,7 @@ def _integrals(
     return power
 
 
-def _real_nodes(mode: GuidedMode, outside: Complexes, panels: Panels) -> tuple[Complexes, Reals]:
+def real_nodes(mode: GuidedMode, outside: Complexes, panels: Panels) -> tuple[Complexes, Reals]:
     """Nodes q and weights (P, NODES): from 0 to n_out or, on the other side of it, to N.
 
     q = n_out sin(theta), and n_out to N by the cosine: the integrand has square roots at n_out and
@@ -133,7 +136,8 @@ def _real_nodes(mode: GuidedMode, outside: Complexes, panels: Panels) -> tuple[C
     return q.astype(np.complex128), slope * width * w
 
 
-def _products(mode: GuidedMode, q: Complexes, weight: Reals, place: Integers) -> Reals:
+def real_products(mode: GuidedMode, q: Complexes, weight: Reals, place: Integers) -> Reals:
+    """Phi, G, Re H, Im H of `radiated_kernel` with weight and 1/(2 pi P), (P, 4, NODES)."""
     f, f_back, g, g_back = transforms(mode, q, place)
     mixed = f * g.conj() + f_back * g_back.conj()
     factor = weight / (2.0 * np.pi * mode.flow[place][:, None])

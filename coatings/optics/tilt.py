@@ -29,6 +29,7 @@ the film reflects there and the mode does not take back is S.
 from __future__ import annotations
 
 from dataclasses import dataclass, field
+from typing import Literal
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -38,7 +39,8 @@ from coatings.optics.arrays import Complexes, Reals, check_finite, check_shape, 
 from coatings.optics.batch import Batch
 from coatings.optics.contour import unit_nodes
 from coatings.optics.derivatives import derivatives
-from coatings.optics.facet import ModalFacet
+from coatings.optics.facet import ModalFacet, Power
+from coatings.optics.gradients import gradient
 from coatings.optics.modal_response import ModalResponse
 from coatings.optics.scene import Scene
 from coatings.optics.spectrum import reflection, response
@@ -249,12 +251,39 @@ class TiltedFacet:
         film: ArrayLike,
         film_shift: ArrayLike | None = None,
         incident_shift: ArrayLike | None = None,
+        of: Power = "R",
     ) -> tuple[Reals, Reals]:
-        """R (S, W) and d R / d thickness_nm (S, W, L) [1/nm]; parameters as for `response`."""
-        r, slope = self.amplitude_gradient(
-            thickness_nm, film=film, film_shift=film_shift, incident_shift=incident_shift
+        """R, T, S or A (S, W) and its derivative with every thickness (S, W, L) [1/nm], exact.
+
+        Parameters and errors as for `ModalFacet.gradient`; T and A are the film's at the tilt.
+        """
+        shifts = {"film_shift": film_shift, "incident_shift": incident_shift}
+        if of not in {"R", "T", "S", "A"}:
+            raise InputError(Problem("of", f"got {of!r}; give one of R, T, S, A"))
+        if self.tilt_deg == 0.0 and self.modal is not None:
+            return self.modal.gradient(thickness_nm, film=film, of=of, **shifts)
+        if of in {"T", "A"}:
+            share: Literal["T", "A"] = "T" if of == "T" else "A"
+            return gradient(
+                self.coating,
+                thickness_nm,
+                film=film,
+                film_shift=film_shift,
+                incident_shift=incident_shift,
+                of=share,
+            )
+        r, by_r = self.amplitude_gradient(thickness_nm, film=film, **shifts)
+        big_r, slope = np.abs(r) ** 2, 2.0 * (r.conj()[:, :, None] * by_r).real
+        if of == "R":
+            return big_r, slope
+        alone, steep = gradient(
+            self.coating,
+            thickness_nm,
+            film=film,
+            film_shift=film_shift,
+            incident_shift=incident_shift,
         )
-        return r.real**2 + r.imag**2, 2.0 * (r.conj()[:, :, None] * slope).real
+        return alone - big_r, steep - slope
 
     def weighted_gradient(
         self,

@@ -12,7 +12,7 @@ from films_in_numpy import Twin
 from coatings.design.ordered import best_ordered
 from coatings.design.plan import facet_task
 from coatings.design.polish import minimax
-from coatings.design.search import BREADTH, search_count
+from coatings.design.search import CLOSELY, search_count
 
 WHOLE = {"decimals_nm": 0}
 SHARP = {"at_most": 0.0005, "band_nm": [966.0, 986.0]}
@@ -42,7 +42,7 @@ def test_whole_nanometres_against_the_whole_neighbourhood(order):
         film=film,
         limits=task.limits,
         score=lambda s: task.model.margin(s, film=film),
-        breadth=BREADTH,
+        **CLOSELY,
     )
     twin = Twin.of(made, [NAMES[f] for f in order])
     best = twin.margin(neighbourhood(start, 3)).max()
@@ -65,7 +65,7 @@ def test_plain_rounding_loses_where_the_neighbourhood_does_not():
         film=film,
         limits=task.limits,
         score=lambda s: task.model.margin(s, film=film),
-        breadth=BREADTH,
+        **CLOSELY,
     )
     twin = Twin.of(made, ["H", "L", "H", "L"], step_nm=4.0)
     around = twin.margin(neighbourhood(exact, 3)).max()
@@ -95,6 +95,7 @@ def test_a_total_that_binds_is_kept_after_rounding():
         film=film,
         limits=task.limits,
         score=lambda s: s.sum(axis=1),
+        **CLOSELY,
     )
     assert found.sum() == 200.0
 
@@ -108,6 +109,7 @@ def test_a_long_stack_with_a_total_is_rounded_inside_it():
         film=film,
         limits=limits,
         score=lambda s: np.zeros(len(s)),
+        **CLOSELY,
     )
     assert limits.held(found[None], film=film).all()
 
@@ -117,6 +119,10 @@ def test_a_grid_without_a_stack_has_no_best():
     limits = facet_task(made, "front", seed=0).limits
     film = np.array([0, 1])
     found = best_ordered(
-        np.array([100.5, 100.5]), film=film, limits=limits, score=lambda s: np.zeros(len(s))
+        np.array([100.5, 100.5]),
+        film=film,
+        limits=limits,
+        score=lambda s: np.zeros(len(s)),
+        **CLOSELY,
     )
     assert found is None

@@ -2,27 +2,20 @@
 
 import numpy as np
 import pytest
+from facets import GUIDES, SILICA, STACKS, TANTALA, facet
 from hypothesis import given, settings
 from hypothesis import strategies as st
 from modal_in_numpy import Twin
 
-from coatings.errors import ArrayError, InputError
+from coatings.errors import ArrayError
 from coatings.optics import reflection
 from coatings.optics.facet import ModalFacet
-from coatings.optics.guide import Guide, fundamental, modes
+from coatings.optics.guide import Guide, modes
 from coatings.optics.radiated import thrown_back
 
 BOTH = pytest.mark.parametrize("tm", [False, True])
 NONE = np.empty((1, 0))
 NO_FILM = np.empty(0, int)
-SILICA, TANTALA = 1.45, 2.10
-
-
-def facet(index, um, nm, *, tm, films=(SILICA, TANTALA), outside=1.0, fine=1):
-    nm = np.atleast_1d(np.asarray(nm, float))
-    mode = fundamental(Guide(nm, index, um), tm=tm)
-    table = np.repeat(np.array(films, complex)[:, None], nm.size, axis=1)
-    return ModalFacet(mode, outside, table, fine)
 
 
 def bare(index, um, nm, *, tm):
@@ -110,20 +103,6 @@ def test_a_vanishing_step_reflects_as_the_modal_index(tm):
     assert errors[1] < 2e-3
 
 
-STACKS = {
-    "bare": ([], []),
-    "one layer": ([0], [[231.0]]),
-    "two layers": ([1, 0], [[80.0, 190.0]]),
-    "mirror": ([0, 1] * 3, [[225.0, 155.0] * 3]),
-}
-GUIDES = {
-    "weak": ([3.30, 3.32, 3.30], [0.3]),
-    "tight": ([3.20, 3.55, 3.20], [0.3]),
-    "unequal": ([3.17, 3.25, 3.40, 3.30, 3.20], [0.10, 0.20, 0.15]),
-    "lossy": ([3.2, 3.4 + 0.01j, 3.2 + 0.002j], [0.3]),
-}
-
-
 @BOTH
 @pytest.mark.parametrize("guide", GUIDES)
 def test_against_the_slow_twin(guide, tm):
@@ -133,41 +112,6 @@ def test_against_the_slow_twin(guide, tm):
         found = one.reflection(np.reshape(nm, (1, -1)), film=np.array(film, int))[0, 0]
         films = [(SILICA, TANTALA)[kind] for kind in film]
         assert abs(found - twin.reflection(films, np.ravel(nm))) < 1e-6
-
-
-@BOTH
-@pytest.mark.parametrize("guide", GUIDES)
-def test_gradients_against_cauchy_s_integral(guide, tm):
-    one = facet(*GUIDES[guide], 1310.0, tm=tm, films=(SILICA + 0.01j, TANTALA), fine=2)
-    twin = Twin(one.mode, highest_index=one.mode.n_eff[0].real)
-    film, nm = [1, 0, 1, 0], np.array([[80.0, 190.0, 155.0, 240.0]])
-    r, slope = one.amplitude_gradient(nm, film=film)
-    big_r, big_slope = one.gradient(nm, film=film)
-    films = [(SILICA + 0.01j, TANTALA)[kind] for kind in film]
-    # The twin's sums end at q = 60, where those of TM still lack a millionth.
-    error = (2e-6 if tm else 1e-7) * np.abs(slope).max()
-    for layer in range(4):
-        expected = twin.slope(films, nm[0], layer)
-        assert abs(slope[0, 0, layer] - expected) < error
-        by_r = 2.0 * (r[0, 0].conj() * expected).real
-        assert abs(big_slope[0, 0, layer] - by_r) < 2.0 * error
-    assert big_r[0, 0] == pytest.approx(abs(r[0, 0]) ** 2, rel=1e-14)
-
-
-@BOTH
-@pytest.mark.parametrize("guide", GUIDES)
-def test_gradients_against_differences_of_high_order(guide, tm):
-    one = facet(*GUIDES[guide], [1290.0, 1310.0], tm=tm, films=(SILICA + 0.01j, TANTALA))
-    film, nm = [1, 0, 1, 0], np.array([[80.0, 190.0, 155.0, 240.0]])
-    _, slope = one.amplitude_gradient(nm, film=film)
-    for layer in range(4):
-        step = np.zeros(4)
-        step[layer] = 2.0
-        found = 0.0
-        for k, weight in ((1, 3 / 4), (2, -3 / 20), (3, 1 / 60)):
-            up = one.reflection(nm + k * step, film=film)
-            found += weight * (up - one.reflection(nm - k * step, film=film)) / 2.0
-        assert np.abs(slope[0, :, layer] - found[0]).max() < 1e-7 * np.abs(slope).max()
 
 
 @BOTH
@@ -270,58 +214,6 @@ def test_quadrature_and_balance_over_guides_and_stacks(core, step, thickness, tm
     assert found.T[0, 0] > 0.0
 
 
-def test_a_shift_of_the_guide_is_a_guide_that_is_shifted():
-    nm = np.linspace(1280.0, 1340.0, 5)
-    shift = np.array([-0.018, -0.004, 0.0, 0.007, 0.02])
-    thickness = np.tile([80.0, 190.0], (5, 1)) + np.arange(5.0)[:, None]
-    for tm in (False, True):
-        for index, um in GUIDES.values():
-            one = facet(index, um, nm, tm=tm)
-            together = one.response(thickness, film=[1, 0], incident_shift=shift)
-            _, slope = one.gradient(thickness, film=[1, 0], incident_shift=shift)
-            for s, by in enumerate(shift):
-                alone = one.shifted(by)
-                expected = alone.response(thickness[s : s + 1], film=[1, 0])
-                assert np.abs(together.r[s] - expected.r[0]).max() < 1e-6
-                np.testing.assert_allclose(together.T[s], expected.T[0], atol=1e-6)
-                np.testing.assert_allclose(together.S[s], expected.S[0], atol=2e-6)
-                expected_slope = alone.gradient(thickness[s : s + 1], film=[1, 0])[1]
-                np.testing.assert_allclose(slope[s], expected_slope[0], atol=1e-8)
-
-
-@BOTH
-def test_film_shifts_and_several_films_stack_by_stack(tm):
-    rng = np.random.default_rng(5)
-    nm = np.array([1280.0, 1310.0, 1340.0])
-    one = facet(*GUIDES["unequal"], nm, tm=tm)
-    thickness = rng.uniform(40.0, 300.0, (4, 3))
-    film = np.array([[0, 1, 0], [1, 0, 1], [0, 0, 1], [1, 1, 0]])
-    shift = rng.normal(0.0, 0.02, (4, 2)) + 1j * rng.uniform(0.0, 1e-3, (4, 2))
-    together = one.response(thickness, film=film, film_shift=shift)
-    value, slope = one.gradient(thickness, film=film, film_shift=shift)
-    np.testing.assert_allclose(value, together.R, rtol=1e-13)
-    for s in range(4):
-        films = np.array([SILICA, TANTALA]) + shift[s]
-        alone = facet(*GUIDES["unequal"], nm, tm=tm, films=films)
-        expected = alone.response(thickness[s : s + 1], film=film[s])
-        # The contour of the shifted films is another one: equal within the quadrature.
-        np.testing.assert_allclose(together.r[s], expected.r[0], atol=1e-6)
-        np.testing.assert_allclose(together.S[s], expected.S[0], atol=1e-6)
-        steeper = alone.gradient(thickness[s : s + 1], film=film[s])[1]
-        np.testing.assert_allclose(slope[s], steeper[0], atol=1e-7)
-
-
-@BOTH
-def test_weighted_gradient_is_the_weighted_sum(tm):
-    rng = np.random.default_rng(6)
-    one = facet(*GUIDES["tight"], [1290.0, 1310.0, 1330.0], tm=tm)
-    thickness, weight = rng.uniform(40.0, 300.0, (4, 3)), rng.normal(size=(4, 3))
-    value, slope = one.gradient(thickness, film=[0, 1, 0])
-    found, weighted = one.weighted_gradient(thickness, film=[0, 1, 0], weight=weight)
-    np.testing.assert_array_equal(found, value)
-    np.testing.assert_allclose(weighted, (weight[:, :, None] * slope).sum(axis=1), rtol=1e-12)
-
-
 @BOTH
 def test_a_mirror_of_200_pairs(tm):
     one = facet(*GUIDES["unequal"], 1310.0, tm=tm)
@@ -382,12 +274,6 @@ def test_bad_arrays_are_named():
         ModalFacet(one.mode, 1.0, [[1.45]])
     with pytest.raises(ArrayError, match=r"outside\[0\]: is 0; no medium"):
         ModalFacet(one.mode, 0.0, [[1.45, 1.45]])
-
-
-def test_a_shift_too_far_is_refused_with_its_size():
-    one = facet([3.3, 3.4, 1.0], [0.26], 976.0, tm=False)
-    with pytest.raises(InputError, match=r"guide: with -.* on the index of every layer, .*976 nm"):
-        one.reflection([[100.0]], film=[0], incident_shift=[-0.7])
 
 
 @BOTH

@@ -214,10 +214,25 @@ def test_gradients_and_shifts(with_guide, tm):
         np.testing.assert_allclose(
             slope[:, :, layer], (up - down) / 2e-2, atol=1e-6 * np.abs(slope).max()
         )
+    for of in ("T", "S", "A"):
+        share, steep = tilted.gradient(STACKS, film=[1, 0], of=of, **shifts)
+        up = getattr(tilted.response(STACKS + step, film=[1, 0], **shifts), of)
+        down = getattr(tilted.response(STACKS - step, film=[1, 0], **shifts), of)
+        np.testing.assert_allclose(steep[:, :, 1], (up - down) / 2e-2, atol=1e-8)
+        np.testing.assert_allclose(share, 0.5 * (up + down), atol=1e-6)
     weight = rng.normal(size=(2, 3))
     again, weighted = tilted.weighted_gradient(STACKS, film=[1, 0], weight=weight, **shifts)
     np.testing.assert_array_equal(again, value)
     np.testing.assert_allclose(weighted, np.einsum("sw,swl->sl", weight, slope), rtol=1e-13)
+
+
+def test_shares_without_tilt_are_the_guide_s():
+    modal, tilted = guided(False, 0.0, None)
+    for of in ("R", "S"):
+        found, expected = (one.gradient(STACKS, film=[1, 0], of=of) for one in (tilted, modal))
+        np.testing.assert_array_equal(found[1], expected[1])
+    with pytest.raises(InputError, match="of: got 'B'; give one of R, T, S, A"):
+        tilted.gradient(STACKS, film=[1, 0], of="B")
 
 
 def test_a_shift_moves_overlap_and_waves():

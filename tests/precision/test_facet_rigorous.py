@@ -96,6 +96,24 @@ def test_antireflection_coatings_at_a_ten_thousandth(name, tm):
     assert abs(found) ** 2 == pytest.approx(expected, rel=allowed)
 
 
+# Metals beyond a dielectric and on the chip itself: no other check has a surface wave in it.
+@BOTH
+@pytest.mark.parametrize(
+    ("index", "um", "nm", "films", "thickness"),
+    [
+        ([3.09, 3.20, 3.09], [2.5], 4600.0, [1.6, 2.7 + 31.0j], [300.0, 150.0]),
+        ([3.20, 3.38, 3.20], [0.3], 980.0, [1.65, 0.15 + 6.0j], [80.0, 200.0]),
+        ([3.20, 3.38, 3.20], [0.3], 980.0, [0.15 + 6.0j], [200.0]),
+        ([2.48, 2.53, 2.48], [0.2], 405.0, [1.78, 0.05 + 2.2j], [60.0, 100.0]),
+    ],
+)
+def test_metals(index, um, nm, films, thickness, tm):
+    mode = fundamental(Guide([nm], index, um), tm=tm)
+    twin = RigorousGuide(index, um, wavelength_nm=nm, tm=tm, n_eff=mode.n_eff[0])
+    found, _ = model(mode, films, thickness)
+    assert abs(found) == pytest.approx(abs(twin.reflection(films, thickness)), abs=1e-4)
+
+
 # Computed by independent code, to the digits shown: the twin itself is held by them.
 @pytest.mark.parametrize(
     ("core", "clad", "um", "nm", "te", "tm"),
