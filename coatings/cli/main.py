@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import difflib
 import importlib
+import os
 import sys
 
 import click
@@ -12,6 +13,9 @@ from coatings import __version__
 from coatings.cli.interrupts import watched_interrupts
 from coatings.cli.screen import complain
 from coatings.errors import CoatingsError
+
+# Before numpy is imported: its matrices are small here, and threads of the linear algebra only fight.
+os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
 
 MOST_LINES = 5
 YES, NO, UNUSABLE = 0, 1, 2

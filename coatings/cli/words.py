@@ -46,9 +46,11 @@ def window_text(window: Window) -> str:
 
 
 def watts(power_W: float) -> str:
-    """A power in W, or in mW below half a watt."""
+    """A power in W, in mW below half a watt, in uW below half a milliwatt."""
     if abs(power_W) < 1e-11:
         return "0 W"
+    if power_W < 5e-4:
+        return f"{1e6 * power_W:.3g} uW"
     return f"{power_W:.3g} W" if power_W >= 0.5 else f"{1e3 * power_W:.3g} mW"
 
 

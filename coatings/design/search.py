@@ -70,6 +70,8 @@ class _Effort:
 
 
 def _effort(count: int) -> _Effort:
+    if count <= 3:
+        return _Effort(starts=240, keep=6, finish=16, draws=512, fine_draws=8192)
     if count <= 4:
         return _Effort(starts=240, keep=6, finish=16, draws=512, fine_draws=4096)
     if count <= 8:

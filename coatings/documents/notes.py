@@ -5,11 +5,17 @@ from __future__ import annotations
 from collections.abc import Iterator, Mapping
 from typing import Any
 
-from coatings.facets import stack_of
+import numpy as np
+
+from coatings.facets import chip_guide, facet_spectrum, stack_of
+from coatings.optics.tilt import OPTIMISTIC_R
 from coatings.recipe import Facet, FacetName, Recipe
 from coatings.stack import Stack
 
 Json = dict[str, Any]
+
+WIDEST_STEP = 0.22
+"""Index step of a guide up to which its mode's |r| is held to 4e-4 against a rigorous solution."""
 
 PLANE_WAVE_ENOUGH = 0.005
 """Below this reflectance a plane wave says little about a guided mode (common practice, no source)."""
@@ -25,6 +31,8 @@ def result_notes(recipe: Recipe, stacks: Mapping[FacetName, Stack | None]) -> tu
         *recipe.material_notes,
         *_unknown_k(recipe, stacks),
         *_low_reflectance(recipe, stacks),
+        *_coarse_guide(recipe),
+        *_optimistic_tilt(recipe, stacks),
     )
 
 
@@ -59,6 +67,30 @@ def _low_reflectance(recipe: Recipe, stacks: Mapping[FacetName, Stack | None]) -
             yield (
                 f"{side}: calculated for a plane wave; at so low a reflectance the guided mode's own "
                 "can differ by a large factor"
+            )
+
+
+def _coarse_guide(recipe: Recipe) -> Iterator[str]:
+    guide = recipe.chip.guide
+    if guide is None:
+        return
+    at = np.array([recipe.chip.wavelength_nm])
+    index = chip_guide(recipe, at).index[:, 0].real
+    if float(index.max() - index.min()) > WIDEST_STEP:
+        yield (
+            f"the guide's index steps by {index.max() - index.min():.2g}: the model of its mode is good to "
+            "1.5e-3 in |r| there, and to a fifth of R for an antireflection coating"
+        )
+
+
+def _optimistic_tilt(recipe: Recipe, stacks: Mapping[FacetName, Stack | None]) -> Iterator[str]:
+    at = np.array([recipe.chip.wavelength_nm])
+    for side, searched in stacks.items():
+        seen = facet_spectrum(recipe, side, wavelength_nm=at, searched=searched)
+        if seen.model == "tilted" and float(seen.R[0]) < OPTIMISTIC_R:
+            yield (
+                f"{side}: an R below {OPTIMISTIC_R:g} into the tilted mode is optimistic, a real lateral "
+                "mode has wider tails than a Gaussian"
             )
 
 

@@ -33,6 +33,8 @@ if TYPE_CHECKING:  # searching and laser models are slow to import, and curve ne
     from coatings.stack import Stack
     from materials import Material
 
+DECADES_APART = 30.0
+
 
 def spectrum_picture(
     recipe: Recipe, curves: Mapping[FacetName, FacetCurve], *, stacks: Mapping[FacetName, Stack],
@@ -53,7 +55,7 @@ def spectrum_picture(
             _frame_windows(spectrum_ax, [w.window for w in curve.windows])
             draw_gates(spectrum_ax, [w.window for w in curve.windows])
             if side in bands or curve.plane_spectrum is not None:
-                spectrum_ax.legend(loc="lower right", bbox_to_anchor=(1.0, 0.99), ncols=3,
+                spectrum_ax.legend(loc="lower right", bbox_to_anchor=(1.0, 0.99), ncols=4,
                                    borderaxespad=0.0)  # fmt: skip
         return png(figure)
 
@@ -128,6 +130,10 @@ def _frame_windows(ax: Axes, windows: list[Window]) -> None:
     shown = [y for line in ax.lines for x, y in zip(*map(np.asarray, line.get_data()), strict=True)
              if start <= x <= stop]  # fmt: skip
     low, high = min([*levels, *shown]), max([*levels, *shown])
+    if max(levels) > DECADES_APART * min(levels):  # gates of one picture that a line can't hold
+        ax.set_yscale("log")
+        ax.set_ylim(max(0.5 * low, 1e-4 * min(levels)), 3.0 * high)
+        return
     room = 0.35 * (high - low) or 0.5 * high
     ax.set_ylim(max(low - room, 0.0) if low > 5 * (high - low) else 0.0, min(high + room, 101.0))
 

@@ -22,6 +22,8 @@ if TYPE_CHECKING:  # searching and laser models are slow to import, and curve ne
     from coatings.laser import PowerCurrent
     from coatings.recipe import FacetName, Window
 
+FILM_ALONE = "window of the film alone"
+GATE_SHARE = 0.035  # of the height of the axes
 NARROWEST_WRITTEN, NARROWEST_UPRIGHT = 0.007, 0.06  # shares of the drawn width
 
 
@@ -68,22 +70,35 @@ def draw_plane_wave(ax: Axes, spectrum: FacetSpectrum) -> Line2D:
 
 
 def draw_gates(ax: Axes, windows: Sequence[Window]) -> list[Rectangle]:
-    """Windows as gates: bars that the curve must pass between, below or above."""
-    bars = []
-    bottom, top = ax.get_ylim()
-    reach = 0.035 * (top - bottom)
+    """Windows as gates: bars that the curve must pass between, below or above.
+
+    Hollow bars are for the film alone; the curve of the mode need not keep to them.
+    """
+    bars: list[Rectangle] = []
     for window in windows:
         start, stop = window.band_nm
+        is_hollow = window.of == "coating"
         for level, outward in ((window.low, -1.0), (window.high, 1.0)):
             if level is None or not 0.0 < level < 1.0:
                 continue
             bar = Rectangle(
-                (start, 100 * level), stop - start, outward * reach, facecolor=GATE, edgecolor="none",
+                (start, 100 * level), stop - start, _gate_height(ax, 100 * level, outward),
+                facecolor="none" if is_hollow else GATE, edgecolor=GATE if is_hollow else "none",
                 alpha=0.85, zorder=3,
             )  # fmt: skip
+            if is_hollow and not any(other.get_label() == FILM_ALONE for other in bars):
+                bar.set_label(FILM_ALONE)
             bars.append(bar)
             ax.add_patch(bar)
     return bars
+
+
+def _gate_height(ax: Axes, level: float, outward: float) -> float:
+    """Height of a bar that looks the same at every level of the axis."""
+    bottom, top = ax.get_ylim()
+    if ax.get_yscale() == "log":
+        return level * float((top / bottom) ** (outward * GATE_SHARE) - 1.0)
+    return outward * GATE_SHARE * (top - bottom)
 
 
 def draw_layers(
@@ -168,10 +183,16 @@ def draw_yields(ax: Axes, plan: FacetPlan) -> PathCollection:
     return points
 
 
+def _power_unit(most_W: float) -> tuple[float, str]:
+    """Factor and unit that make the greatest power at least a half."""
+    units = ((1.0, "W"), (1e3, "mW"), (1e6, "uW"), (1e9, "nW"))
+    return next((pair for pair in units if pair[0] * most_W >= 0.5), units[0])
+
+
 def draw_power(ax: Axes, power: PowerCurrent, *, side: FacetName, drive_A: float | None) -> Line2D:
     """Power of one facet against current; the power at the operating current is written out."""
     watts = power.front_W if side == "front" else power.rear_W
-    scale, unit = (1.0, "W") if float(watts.max()) >= 0.5 else (1e3, "mW")
+    scale, unit = _power_unit(float(watts.max()))
     (line,) = ax.plot(power.current_A, scale * watts, color=SIDE_COLOURS[side], lw=1.8)
     ax.set_ylabel(f"{side} ({unit})", color=SIDE_COLOURS[side])
     ax.set_xlim(0, float(power.current_A[-1]))

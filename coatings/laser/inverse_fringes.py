@@ -13,7 +13,7 @@ with w given the blurred shape is fitted, and x is that of the chip.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -144,7 +144,7 @@ def read_ripple(
     periods = find_periods(wave, logarithm, expected_per_cm=expected)
     windows = []
     for period in _visible(periods, resolution_nm, at):
-        window = _settle(wave, logarithm, at, period, _blur(resolution_nm, at, period))
+        window = _settle(wave, logarithm, at, period, resolution_nm)
         if abs(window.shape.period / period - 1.0) < _SAME_PERIOD:
             windows.append(window)
     if not windows:
@@ -207,7 +207,7 @@ class _Window:
 
 
 def _settle(
-    wave: FloatArray, logarithm: FloatArray, at: float, period: float, blur: float
+    wave: FloatArray, logarithm: FloatArray, at: float, period: float, resolution_nm: float
 ) -> _Window:
     """The shape over a window that grows from a dozen fringes, so that no fringe is miscounted."""
     fringes, shape = _FIRST_FRINGES, None
@@ -216,10 +216,12 @@ def _settle(
         rows = np.abs(wave - at) <= _reach_around(wave, at, scale)
         s, here = (wave[rows] - at) / scale, logarithm[rows]
         if shape is None:
+            blur = _blur(resolution_nm, at, period)
             # One x for the dozen first: curves released too early can bend x to threshold.
             shape = fit_shape(first_shape(s, scale, here, period=period, blur=blur), here)
-        count = float(np.ptp(wave[rows])) / period
-        shape = fit_shape(shape.on(s, scale, count), here)
+        # The period is known better now, and the blur goes with its square.
+        shape = replace(shape, blur=_blur(resolution_nm, at, shape.period))
+        shape = fit_shape(shape.on(s, scale, float(np.ptp(wave[rows])) / period), here)
         if rows.all() or fringes >= _MOST_FRINGES:
             return _Window(wave[rows], here, shape)
         fringes = min(2.0 * fringes, _MOST_FRINGES)

@@ -102,12 +102,12 @@ def slope_ratio(
     front, rear = sweep.front_W[used], sweep.rear_W[used]
     over, under = (front, rear) if unknown is Side.FRONT else (rear, front)
     _refuse_not_together(over, under)
-    ratio, sigma = _alike_line(over, under)
+    ratio, sigma, degrees = _alike_line(over, under)
     current = sweep.current_A[used]
     return SlopeRatio(
         ratio=ratio,
         ratio_sigma=sigma,
-        degrees=float(current.size - 2),
+        degrees=degrees,
         from_A=float(current.min()),
         to_A=float(current.max()),
         points=int(current.size),
@@ -178,24 +178,31 @@ def _refuse_not_together(over: FloatArray, under: FloatArray) -> None:
         )
 
 
-def _alike_line(over: FloatArray, under: FloatArray) -> tuple[float, float]:
-    """Ratio of the standard deviations and the jackknife's relative standard error."""
+def _alike_line(over: FloatArray, under: FloatArray) -> tuple[float, float, float]:
+    """Ratio of the standard deviations, the jackknife's relative standard error, its degrees.
+
+    The degrees are those of a sum of squares as uneven as the jackknife's own terms: noise that
+    grows with power leaves the error to few points.
+    """
     n = over.size
-
-    def without_each(power: FloatArray) -> FloatArray:
-        """Sum of squares about the mean without each point in turn."""
-        off = power - power.mean()
-        left: FloatArray = off @ off - off**2 * n / (n - 1)
-        return left
-
-    ratio = float(np.std(over) / np.std(under))
-    with np.errstate(divide="ignore", invalid="ignore"):
-        each = 0.5 * np.log(without_each(over) / without_each(under))
-    if not np.all(np.isfinite(each)):
+    left = np.stack([_without_each(over), _without_each(under)])
+    if np.any(left <= 1e-9 * np.max(left, axis=1, keepdims=True)):
         raise InputError(
             Problem("front_W, rear_W", "hang on a single point above threshold; give more currents")
         )
-    return ratio, float(np.sqrt((n - 1) / n * np.sum((each - each.mean()) ** 2)))
+    each = 0.5 * np.log(left[0] / left[1])
+    square = (each - each.mean()) ** 2
+    total = float(np.sum(square))
+    uneven = 3.0 * total**2 / float(np.sum(square**2)) - 2.0 if total > 0.0 else np.inf
+    ratio = float(np.std(over) / np.std(under))
+    return ratio, float(np.sqrt((n - 1) / n * total)), float(min(n - 2.0, max(uneven, 1.0)))
+
+
+def _without_each(power: FloatArray) -> FloatArray:
+    """Sum of squares about the mean without each point in turn."""
+    off = power - power.mean()
+    left: FloatArray = off @ off - off**2 * power.size / (power.size - 1)
+    return left
 
 
 def _drift_note(over: FloatArray, under: FloatArray) -> tuple[str, ...]:
@@ -207,7 +214,7 @@ def _drift_note(over: FloatArray, under: FloatArray) -> tuple[str, ...]:
     design = np.stack([np.ones(n), s, s**2], axis=1)
     line = np.linalg.lstsq(design, over, rcond=None)[0]
     rest = over - design @ line
-    error = np.sqrt(rest @ rest / (n - 3) * np.linalg.inv(design.T @ design)[2, 2])
+    error = np.sqrt(rest @ rest / (n - 3) * np.linalg.pinv(design.T @ design)[2, 2])
     change = 2.0 * line[2] / line[1]
     sure = error == 0.0 or 2.0 * t_probability(-abs(line[2]) / error, n - 3) < _SURE
     if not (sure and abs(change) > _MATTERS):

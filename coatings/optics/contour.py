@@ -29,7 +29,9 @@ MOST_GROWTH = 3.0
 GRADING = 3.0
 NODES = {False: (48, 48), True: (64, 128)}
 """Nodes on arc and tail, by ``tm``; they hold 1e-6 in r."""
-MORE_ON_ARC, STEP_ON_ARC = 32, 16
+QUICK_NODES = {False: (32, 16), True: (32, 32)}
+"""Nodes for a search; they hold 1e-5 in r."""
+MORE_ON_ARC, QUICK_MORE_ON_ARC, STEP_ON_ARC = 32, 16, 16
 """A guide of thickness D makes exp(i q D) turn D times as q grows by one: 32 + D nodes at least."""
 
 
@@ -48,11 +50,16 @@ def unit_nodes(n: int) -> tuple[Reals, Reals]:
     return 0.5 * (x + 1.0), 0.5 * w
 
 
-def nodes_for(guide_thickness: Reals, *, tm: bool) -> tuple[int, int]:
-    """How many nodes arc and tail take for guides of these thicknesses [1/k0]."""
-    arc, tail = NODES[tm]
-    steps = math.ceil((MORE_ON_ARC + float(guide_thickness.max())) / STEP_ON_ARC)
-    return max(arc, STEP_ON_ARC * steps), tail
+def nodes_for(guide_thickness: Reals, *, tm: bool, fine: int) -> tuple[int, int]:
+    """How many nodes arc and tail take for guides of these thicknesses [1/k0].
+
+    ``fine`` multiplies the numbers; 0 is for the quick ones.
+    """
+    arc, tail = NODES[tm] if fine else QUICK_NODES[tm]
+    more = MORE_ON_ARC if fine else QUICK_MORE_ON_ARC
+    steps = math.ceil((more + float(guide_thickness.max())) / STEP_ON_ARC)
+    times = max(fine, 1)
+    return times * max(arc, STEP_ON_ARC * steps), times * tail
 
 
 def contour(

@@ -56,7 +56,7 @@ from coatings.optics.guide import shifted_mode
 from coatings.optics.guide_modes import GuidedMode
 from coatings.optics.modal_kernel import modal
 from coatings.optics.modal_response import Found, ModalResponse
-from coatings.optics.power_slopes import power_gradient
+from coatings.optics.power_slopes import share_gradient
 from coatings.optics.radiated import sent_out, thrown_back
 from coatings.optics.scene import Scene
 from coatings.optics.shifts import mix_of, nodes_of, span_of
@@ -91,12 +91,15 @@ class ModalFacet:
     films : array (M, W)
         Index [1] of each distinct film material; M may be 0.
     fine : int
-        Multiplies the nodes of the integrals; 1 holds 1e-6 in r.
+        Multiplies the nodes of the integrals; 1 holds 1e-6 in r. 0 holds 1e-5 in r with a half
+        (TE) or a third (TM) of the nodes, for searches.
 
     Raises
     ------
     ArrayError
         Naming argument, place and value.
+    InputError
+        When ``fine`` is below zero.
     """
 
     mode: GuidedMode
@@ -110,6 +113,8 @@ class ModalFacet:
 
     def __post_init__(self) -> None:
         mode = self.mode
+        if self.fine < 0:
+            raise InputError(Problem("fine", f"got {self.fine}; give 0 or more"))
         nm = mode.guide.wavelength_nm
         plane = Scene(nm, mode.n_eff, self.outside, self.films, tm=mode.tm)
         path = contour_of(mode, plane.films, plane.outside, fine=self.fine)
@@ -332,20 +337,7 @@ class ModalFacet:
 
     def _power_gradient(self, batch: Batch, of: Power) -> tuple[Reals, Reals]:
         found = self._run(batch, 4)
-        if of == "T":
-            return power_gradient(self, batch, found, back=False)
-        if of == "S" and not self._lossless(batch):
-            return power_gradient(self, batch, found, back=True)
-        out, out_slope = power_gradient(self, batch, found, back=False)
-        r, dr = found.r, found.slopes[:, 0] + 1j * found.slopes[:, 1]
-        rest = 1.0 - out - np.abs(r) ** 2
-        rest_slope = -out_slope - 2.0 * (r.conj()[:, :, None] * dr).real
-        if of == "S":
-            return rest, rest_slope
-        if self._lossless(batch):
-            return np.zeros_like(rest), np.zeros_like(rest_slope)
-        back, back_slope = power_gradient(self, batch, found, back=True)
-        return rest - back, rest_slope - back_slope
+        return share_gradient(self, batch, found, of=of, lossless=self._lossless(batch))
 
     def _lossless(self, batch: Batch) -> bool:
         media = (self.films, self.outside, self.mode.n_eff)

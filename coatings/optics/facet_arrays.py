@@ -49,15 +49,14 @@ class Places:
 
 
 def contour_of(mode: GuidedMode, films: Complexes, outside: Complexes, *, fine: int = 1) -> Contour:
-    """The contour of a mode in front of these films; ``fine`` multiplies its nodes."""
+    """The contour of a mode in front of these films; ``fine`` as in `contour.nodes_for`."""
     position = mode.guide.position
     thickness = position[:, -1] - position[:, 0]
-    arc, tail = nodes_for(thickness, tm=mode.tm)
     return contour(
         _highest_index(mode, films, outside),
         guide_thickness=thickness,
         decay=mode.decay.real.min(axis=0),
-        nodes=(fine * arc, fine * tail),
+        nodes=nodes_for(thickness, tm=mode.tm, fine=fine),
     )
 
 

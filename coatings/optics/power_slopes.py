@@ -26,10 +26,30 @@ if TYPE_CHECKING:
     from coatings.optics.modal_response import Found
 
 
+def share_gradient(
+    facet: ModalFacet, batch: Batch, found: Found, *, of: str, lossless: bool
+) -> tuple[Reals, Reals]:
+    """T, S or A (S, W) and its slopes with thickness (S, W, L); found with four parts."""
+    if of == "T":
+        return power_gradient(facet, batch, found, back=False)
+    if of == "S" and not lossless:
+        return power_gradient(facet, batch, found, back=True)
+    out, out_slope = power_gradient(facet, batch, found, back=False)
+    r, dr = found.r, found.slopes[:, 0] + 1j * found.slopes[:, 1]
+    rest = 1.0 - out - np.abs(r) ** 2
+    rest_slope = -out_slope - 2.0 * (r.conj()[:, :, None] * dr).real
+    if of == "S":
+        return rest, rest_slope
+    if lossless:
+        return np.zeros_like(rest), np.zeros_like(rest_slope)
+    back, back_slope = power_gradient(facet, batch, found, back=True)
+    return rest - back, rest_slope - back_slope
+
+
 def power_gradient(
     facet: ModalFacet, batch: Batch, found: Found, *, back: bool
 ) -> tuple[Reals, Reals]:
-    """T or, ``back``, S (S, W) and its slopes with thickness (S, W, L); found with four parts."""
+    """T or, ``back``, S and its slopes by their integrals."""
     power, panels = integrate(facet, batch, found, back=back)
     place = panels.place
     q, weight = real_nodes(facet.mode, facet.outside, panels)

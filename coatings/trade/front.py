@@ -6,7 +6,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from coatings.errors import InputError, Problem
+from coatings.errors import ArrayError, InputError, Problem
 from coatings.laser import FacetLight, FieldModel, LaserEstimate, estimate, estimate_external
 from coatings.laser.checks import out_of_range
 from coatings.trade.best import (
@@ -140,6 +140,8 @@ def _axis(
         problems.append(Problem("R_range", f"is {low:g} to {high:g}; give two rising in 0 ... 1"))
     if problems:
         raise InputError(problems)
+    if present is not None and present.shape:
+        raise ArrayError(Problem("present", "holds arrays; give one front"))
     marks = [] if present is None or not 0.0 < float(present.R) < 1.0 else [float(present.R)]
     if R_range is None:
         low = min([low, *marks])

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from pathlib import Path
 
 import numpy as np
@@ -11,7 +12,7 @@ from matplotlib.figure import Figure
 
 from coatings.curve import facet_curve
 from coatings.documents.look import FILM_COLOURS, SIDE_COLOURS, film_colours
-from coatings.documents.pictures import power_picture, spectrum_picture
+from coatings.documents.pictures import _frame_windows, power_picture, spectrum_picture
 from coatings.documents.plots import Band, draw_gates, draw_layers, draw_power, draw_spectrum
 from coatings.laser import FieldModel, PowerCurrent
 from coatings.recipe import Recipe, parse_recipe
@@ -87,6 +88,32 @@ def test_gates_stand_at_the_bounds_and_face_outward(recipe: Recipe) -> None:
     ]
 
 
+def test_gates_look_alike_on_a_logarithmic_axis(recipe: Recipe) -> None:
+    ax = Figure().subplots()
+    ax.set_yscale("log")
+    ax.set_ylim(1.0, 100.0)
+    bars = draw_gates(ax, recipe.front.windows)
+    ratios = [(bar.get_y() + bar.get_height()) / bar.get_y() for bar in bars]
+    assert ratios == pytest.approx([100**-0.035, 100**0.035, 100**0.035])
+
+
+def test_gate_of_the_film_alone_is_hollow(recipe: Recipe) -> None:
+    ax = Figure().subplots()
+    (window,) = recipe.front.windows[1:]
+    (bar,) = draw_gates(ax, [replace(window, of="coating")])
+    assert bar.get_facecolor()[3] == 0.0
+
+
+def test_gates_far_apart_ask_for_a_logarithmic_axis() -> None:
+    apart = TEXT.replace("at_most = 0.5", "at_most = 0.0005")
+    recipe = parse_recipe(apart, path=Path("x.toml"))
+    ax = Figure().subplots()
+    draw_spectrum(ax, facet_curve(recipe, "front").spectrum, side="front")
+    _frame_windows(ax, list(recipe.front.windows))
+    assert ax.get_yscale() == "log"
+    assert ax.get_ylim()[0] < 0.05
+
+
 def test_layers_run_from_the_chip_at_the_left() -> None:
     ax = Figure().subplots()
     colours = film_colours(["A", "B"])
@@ -123,6 +150,16 @@ def test_power_is_marked_at_the_drive() -> None:
     assert line.get_ydata()[-1] == pytest.approx(2.0)  # mW
     assert [text.get_text() for text in ax.texts] == ["1 mW at 1 A"]
     assert ax.get_ylabel() == "rear (mW)"
+
+
+@pytest.mark.parametrize(
+    ("most_W", "unit"), [(2.0, "W"), (0.4, "mW"), (4e-4, "uW"), (4e-7, "nW"), (0.0, "W")]
+)
+def test_power_has_a_readable_unit(most_W: float, unit: str) -> None:
+    current = np.linspace(0.1, 1.0, 5)
+    ax = Figure().subplots()
+    draw_power(ax, _light(current, front=most_W, rear=0.0), side="front", drive_A=None)
+    assert ax.get_ylabel() == f"front ({unit})"
 
 
 def test_whole_pictures_are_png_and_the_same_each_time(recipe: Recipe) -> None:

@@ -7,7 +7,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 from modal_in_numpy import Twin
 
-from coatings.errors import ArrayError
+from coatings.errors import ArrayError, InputError
 from coatings.optics import reflection
 from coatings.optics.facet import ModalFacet
 from coatings.optics.guide import Guide, modes
@@ -186,13 +186,20 @@ def test_lengths_scale_with_the_wavelength(tm):
 
 
 @BOTH
-def test_doubling_the_nodes(tm):
-    for index, um in GUIDES.values():
-        coarse, fine = (facet(index, um, 1310.0, tm=tm, fine=n) for n in (1, 2))
+@pytest.mark.parametrize(("fine", "error"), [(0, 1e-5), (1, 1e-6)])
+def test_more_nodes_change_no_more_than_what_is_promised(fine, error, tm):
+    others = {
+        "wide": ([3.2, 3.4, 3.2], [10.0]),
+        "wide and tight": ([3.2, 3.6, 3.2], [3.0]),
+        "thin and tight": ([3.2, 3.6, 3.2], [0.1]),
+        "very wide": ([3.2, 3.4, 3.2], [40.0]),
+    }
+    for index, um in (*GUIDES.values(), *others.values()):
+        coarse, better = (facet(index, um, 1310.0, tm=tm, fine=n) for n in (fine, 3))
         for film, nm in STACKS.values():
             stack, kinds = np.reshape(nm, (1, -1)).astype(float), np.array(film, int)
             r = coarse.reflection(stack, film=kinds)
-            assert np.abs(r - fine.reflection(stack, film=kinds)).max() < 1e-6
+            assert np.abs(r - better.reflection(stack, film=kinds)).max() < error
 
 
 @BOTH
@@ -274,6 +281,8 @@ def test_bad_arrays_are_named():
         ModalFacet(one.mode, 1.0, [[1.45]])
     with pytest.raises(ArrayError, match=r"outside\[0\]: is 0; no medium"):
         ModalFacet(one.mode, 0.0, [[1.45, 1.45]])
+    with pytest.raises(InputError, match="fine: got -1; give 0 or more"):
+        ModalFacet(one.mode, 1.0, [[1.45, 1.45]], -1)
 
 
 @BOTH

@@ -133,6 +133,7 @@ def test_the_twin_against_figures_of_other_code(core, clad, um, nm, te, tm):
         assert abs(twin.reflection()) ** 2 == pytest.approx(expected, abs=2e-6)
 
 
+@pytest.mark.slow
 @BOTH
 def test_the_twin_s_own_convergence(tm):
     index, um, nm = GUIDES["860 tight"]
