@@ -7,7 +7,7 @@ import os
 # Before numpy is imported: threads of the linear algebra only fight here, the matrices are small.
 os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
 
-from hypothesis import settings  # noqa: E402
+from hypothesis import settings
 
 # The same examples in every run: a failure is a change's fault, not the dice's.
 settings.register_profile("steady", derandomize=True, deadline=None)

@@ -22,6 +22,7 @@ from coatings.optics.nearby import near
 from coatings.recipe import FacetName, Recipe
 
 RUN_SHARE = 0.95  # share of a run's chips that must be inside for the run to count
+FAR_OUTSIDE = 0.5  # no chip passes when all miss by more than this share of the mean miss
 EXACT_CHIPS = 1024  # chips of a guided mode that are sampled exactly
 CHUNK = 2048  # draws evaluated at once: keeps arrays in cache
 
@@ -216,7 +217,10 @@ def sampled_yield(
         return Yield(inside, 0.0, inside, inside, inside)
     pooled = draw_chips(errors, film=rows, count=chips, generator=generator)
     quick = model.near(nm, film=film)
-    passed = drawn_slack(quick, nm, film=film, draws=pooled) >= 0.0
+    slack = drawn_slack(quick, nm, film=film, draws=pooled)
+    if slack.max() < FAR_OUTSIDE * slack.mean() < 0.0:
+        return Yield(0.0, 1.0 / chips, 0.0, wilson_interval(0, chips)[1], 0.0)
+    passed = slack >= 0.0
     share, error = _corrected(model, quick, nm, film=film, draws=pooled, passed=passed)
     spread = share * (1.0 - share)
     count = chips if error * error * chips <= spread or spread == 0.0 else int(spread / error**2)

@@ -142,15 +142,15 @@ def read_ripple(
     expected = None if mode_spacing_GHz is None else mode_spacing_GHz * 1e7 / c
     logarithm = np.log(spectrum.intensity)
     periods = find_periods(wave, logarithm, expected_per_cm=expected)
-    windows = []
-    for period in _visible(periods, resolution_nm, at):
-        window = _settle(wave, logarithm, at, period, resolution_nm)
-        if abs(window.shape.period / period - 1.0) < _SAME_PERIOD:
-            windows.append(window)
-    if not windows:
-        raise too_few_fringes("shows no period that lasts")
-    best = _without_spikes(min(windows, key=_Window.mean_square))
-    return _reading(best, at)
+    starts = [
+        _start(wave, logarithm, at, period, resolution_nm)
+        for period in _visible(periods, resolution_nm, at)
+    ]
+    for start in sorted(starts, key=_Window.mean_square):
+        window = _grown(wave, logarithm, at, start, resolution_nm)
+        if window.keeps_period():
+            return _reading(_without_spikes(window), at)
+    raise too_few_fringes("shows no period that lasts")
 
 
 def _inside(spectrum: FringeSpectrum, at_nm: float) -> float:
@@ -187,15 +187,22 @@ def _visible(periods: tuple[float, ...], resolution_nm: float, at: float) -> tup
 
 @dataclass(frozen=True, eq=False)
 class _Window:
-    """Points around the reading, as used, with the shape fitted to them."""
+    """Points around the reading, as used, with the shape fitted to them and the period sought."""
 
     wave: FloatArray
     logarithm: FloatArray
     shape: Shape
+    period: float
     spikes: int = 0
 
     def mean_square(self) -> float:
         return float(np.mean((self.logarithm - self.shape.logarithm()) ** 2))
+
+    def keeps_period(self) -> bool:
+        """Whether the fitted fringes are those sought, at the reading and over all points."""
+        sought = float(np.ptp(self.wave)) / self.period
+        here, over_all = self.period / self.shape.period, self.shape.fringes / sought
+        return max(abs(here - 1.0), abs(over_all - 1.0)) < _SAME_PERIOD
 
     def keep(self, rows: NDArray[np.bool_]) -> _Window:
         """Without some points, fitted anew."""
@@ -203,28 +210,52 @@ class _Window:
         logarithm = self.logarithm[rows]
         shape = fit_shape(self.shape.on(s, scale, fringes), logarithm)
         left_out = int(np.count_nonzero(~rows))
-        return _Window(self.wave[rows], logarithm, shape, self.spikes + left_out)
+        return replace(
+            self,
+            wave=self.wave[rows],
+            logarithm=logarithm,
+            shape=shape,
+            spikes=self.spikes + left_out,
+        )
 
 
-def _settle(
+def _start(
     wave: FloatArray, logarithm: FloatArray, at: float, period: float, resolution_nm: float
 ) -> _Window:
+    """A dozen fringes of a period around the reading, with one x for all of them.
+
+    Curves released too early can bend x to threshold.
+    """
+    rows, s, scale = _around(wave, at, _FIRST_FRINGES, period)
+    here = logarithm[rows]
+    blur = _blur(resolution_nm, at, period)
+    shape = fit_shape(first_shape(s, scale, here, period=period, blur=blur), here)
+    return _Window(wave[rows], here, shape, period)
+
+
+def _grown(
+    wave: FloatArray, logarithm: FloatArray, at: float, start: _Window, resolution_nm: float
+) -> _Window:
     """The shape over a window that grows from a dozen fringes, so that no fringe is miscounted."""
-    fringes, shape = _FIRST_FRINGES, None
+    fringes, shape, period = _FIRST_FRINGES, start.shape, start.period
     while True:
-        scale = 0.5 * fringes * period
-        rows = np.abs(wave - at) <= _reach_around(wave, at, scale)
-        s, here = (wave[rows] - at) / scale, logarithm[rows]
-        if shape is None:
-            blur = _blur(resolution_nm, at, period)
-            # One x for the dozen first: curves released too early can bend x to threshold.
-            shape = fit_shape(first_shape(s, scale, here, period=period, blur=blur), here)
+        rows, s, scale = _around(wave, at, fringes, period)
+        here = logarithm[rows]
         # The period is known better now, and the blur goes with its square.
         shape = replace(shape, blur=_blur(resolution_nm, at, shape.period))
         shape = fit_shape(shape.on(s, scale, float(np.ptp(wave[rows])) / period), here)
         if rows.all() or fringes >= _MOST_FRINGES:
-            return _Window(wave[rows], here, shape)
+            return _Window(wave[rows], here, shape, period)
         fringes = min(2.0 * fringes, _MOST_FRINGES)
+
+
+def _around(
+    wave: FloatArray, at: float, fringes: float, period: float
+) -> tuple[NDArray[np.bool_], FloatArray, float]:
+    """Rows of a number of fringes around the reading, their place over a scale, and the scale."""
+    scale = 0.5 * fringes * period
+    rows = np.abs(wave - at) <= _reach_around(wave, at, scale)
+    return rows, (wave[rows] - at) / scale, scale
 
 
 def _reach_around(wave: FloatArray, at: float, half: float) -> float:

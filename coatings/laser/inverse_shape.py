@@ -13,7 +13,7 @@ _LAST_HARMONIC = 27.6  # exp(-27.6) is 1e-12
 _MOST_HARMONICS = 3000
 _FEWEST_TO_TWIST = 8.0
 _BEND = 1e-3
-_FAR = 600.0
+_NEAR, _FAR = 1e-9, 600.0
 _MOST_TRIALS = 100
 
 
@@ -133,7 +133,7 @@ def _bent(decay: FloatArray) -> tuple[FloatArray, FloatArray]:
     root = np.hypot(decay, _BEND)
     # (decay + root)/2, written for decay < 0 without cancellation.
     bent = np.where(decay > 0.0, 0.5 * (decay + root), 0.5 * _BEND**2 / (root + np.abs(decay)))
-    return np.minimum(bent, _FAR), 0.5 * (1.0 + decay / root)
+    return np.clip(bent, _NEAR, _FAR), 0.5 * (1.0 + decay / root)
 
 
 def coefficients(fringes: float) -> tuple[int, int, int]:
@@ -157,8 +157,8 @@ def fit_shape(start: Shape, logarithm: FloatArray) -> Shape:
         start.parameters,
         jac=lambda row: start.with_parameters(row).jacobian(),
         method="lm",
-        xtol=1e-12,
-        ftol=1e-12,
+        xtol=1e-10,
+        ftol=1e-10,
         max_nfev=_MOST_TRIALS,
     )
     return start.with_parameters(found.x)

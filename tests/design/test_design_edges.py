@@ -7,8 +7,9 @@ import pytest
 from design_recipes import recipe
 from films_in_numpy import Twin
 
-from coatings.design.plan import plan_facets
+from coatings.design.plan import facet_task, plan_facets
 from coatings.design.relax import shortfall
+from coatings.design.search import _starts, search_count
 
 ION = {"method": "ion-assisted"}
 HUGE = {
@@ -130,6 +131,7 @@ def assert_sound(made, plan):
         assert np.isfinite([short.miss, short.bound, short.reached, short.wavelength_nm]).all()
 
 
+@pytest.mark.usefixtures("quick_search")
 @pytest.mark.parametrize("name", CASES)
 def test_nothing_breaks(name):
     facet, windows, process, others = CASES[name]
@@ -207,6 +209,7 @@ def test_facets_that_are_given(facet, process):
     )
 
 
+@pytest.mark.slow
 @pytest.mark.parametrize("films", [3, 4])
 def test_three_and_four_films_do_not_explode(films):
     palette = ["L", "M", "H", "N"][:films]
@@ -217,7 +220,21 @@ def test_three_and_four_films_do_not_explode(films):
     assert plan.taken.yields.chips > 0.99
 
 
-def test_both_facets_are_planned_in_one_go():
-    text_front = {**ONE}
-    made = recipe(text_front, AR, process=ION)
+@pytest.mark.usefixtures("quick_search")
+def test_only_facets_with_windows_are_planned():
+    made = recipe(ONE, AR, process=ION)
     assert set(plan_facets(made, seed=0, workers=1)) == {"front"}
+
+
+@pytest.mark.slow
+def test_hundreds_of_layers_need_bounded_memory_and_time():
+    """The Jacobians of all starts are what grows: layers squared times starts, some 100 MB here."""
+    facet = {"palette": ["L", "H"], "max_layers": 400, "layer_nm": [15.0, 400.0]}
+    made = recipe(facet, {"at_least": 0.9999}, process=ION)
+    task = facet_task(made, "front", seed=0)
+    starts = _starts(
+        task, task.limits.orders(200, np.random.default_rng(0))[0], 32, np.random.default_rng(0)
+    )
+    assert len(starts) < 150
+    found = search_count(task, 120)
+    assert found[0].margin > 0.0

@@ -10,6 +10,7 @@ from films_in_numpy import Twin, light
 from coatings.design.plan import plan_facets
 from coatings.design.relax import shortfall
 
+pytestmark = pytest.mark.usefixtures("quick_search")
 MAGNETRON = {"method": "magnetron"}
 
 

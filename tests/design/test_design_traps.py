@@ -101,6 +101,7 @@ def test_the_thinnest_layer_that_the_run_can_hold():
     assert plan.taken.margin < free.taken.margin
 
 
+@pytest.mark.usefixtures("quick_search")
 @pytest.mark.parametrize("decimals", [0, 1, 2])
 def test_every_stack_can_be_ordered(decimals):
     process = {"method": "magnetron", "decimals_nm": decimals}

@@ -210,12 +210,25 @@ def test_a_drive_below_every_threshold():
 
 def test_rollover_is_named():
     # A chip on a poor heat sink, driven past the current of its greatest power.
-    chip = replace(PUMP, thermal_K_per_W=5.0, t0_K=60.0, t1_K=150.0)
+    chip = replace(PUMP, thermal_K_per_W=8.0, t0_K=60.0, t1_K=150.0)
     found = trade(TradeCase(chip=chip, rear=REAR))
     assert found.best.limited_by == "rollover"
     R = found.best.R_front
     assert watts(R, replace(chip, drive_A=12.5)) < watts(R, chip)
     assert "past thermal rollover" in found.notes[0]
+
+
+def test_heat_that_leaves_no_lasing_state():
+    hot = replace(PUMP, thermal_K_per_W=12.0, t0_K=60.0, t1_K=200.0)
+    found = trade(TradeCase(chip=hot, rear=REAR))
+    assert found.best.R_front is None
+    assert found.best.limited_by == "rollover"
+    # A little better, and only some fronts lase: the rows say which.
+    warm = trade(TradeCase(chip=replace(hot, thermal_K_per_W=10.0, t1_K=150.0), rear=REAR))
+    lit = warm.columns.kept["rollover"]
+    assert lit.any()
+    assert not lit.all()
+    assert warm.best.limited_by == "rollover"
 
 
 def test_axis_that_ends_too_early():
@@ -272,12 +285,11 @@ def test_locking_limits_the_range():
     kept = found.columns.kept["locking"]
     assert np.array_equal(kept, found.columns.R_front < limit)
     assert found.best.R_high <= limit * (1.0 + 1e-9)
-    # Where more power lies above, locking is what limits.
-    weak = replace(GRATING, reflectance=0.002)
-    bound = trade(TradeCase(chip=chip, rear=REAR, external=weak))
-    limit = highest_locking_R(chip, weak, R_rear=0.97)
-    if bound.best.limited_by == "locking":
-        assert bound.best.R_front == pytest.approx(limit, rel=1e-3)
+    # A weak grating holds fewer fronts than the power asks for: then locking is what limits.
+    weak = replace(GRATING, reflectance=0.001)
+    bound = trade(TradeCase(chip=chip, rear=REAR, external=weak)).best
+    assert bound.limited_by == "locking"
+    assert bound.R_front == pytest.approx(highest_locking_R(chip, weak, R_rear=0.97), rel=1e-3)
 
 
 def test_mirror_that_reflects_everywhere_has_no_rival():
