@@ -25,7 +25,7 @@ def grid_nm(start: float, stop: float, step: float) -> NDArray[np.float64]:
     steps = np.floor((stop - start) / step + 1e-9)
     if steps >= MOST_POINTS:
         raise InputError(
-            Problem("--nm", f"asks for {steps + 1:.0f} points; give at most {MOST_POINTS}")
+            Problem("--nm", f"asks for {steps + 1:.6g} points; give at most {MOST_POINTS}")
         )
     grid = np.asarray(start + step * np.arange(int(steps) + 1), dtype=np.float64)
     return grid if grid[-1] > stop - 1e-9 else np.append(grid, stop)

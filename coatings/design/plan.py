@@ -81,17 +81,17 @@ def plan_facets(
 ) -> dict[FacetName, FacetPlan]:
     """Plans of the facets with windows, by side.
 
-    Raises InputError when a facet's limits leave no stack to search, or when the work was interrupted
-    before the first stack of a facet was found.
+    A facet of which an interrupted search has found nothing yet is left out. Raises InputError when a facet's
+    limits leave no stack to search, or when the interrupted search has found nothing at all.
     """
     tasks = {s: facet_task(recipe, s, seed=seed) for s in sides if recipe.facets[s].windows}
     searched = {s: t for s, t in tasks.items() if recipe.facets[s].is_searchable}
     found, cut_short = _search(searched, workers, progress)
     plans = {}
     for side, task in tasks.items():
-        if side in searched:
+        if side in found:
             plans[side] = _shortlist(task, found[side], cut_short=cut_short)
-        else:
+        elif side not in searched:
             plans[side] = _judged_as_given(task, recipe.facets[side])
     return plans
 
@@ -107,15 +107,16 @@ def _search(
             pieces = [
                 (tasks[side], count) for side in tasks if left[side] for count in left[side][0]
             ]
-            found, cut_short = _search_pieces(crew, pieces, progress)
+            designs, cut_short = _search_pieces(crew, pieces, progress)
             for side in [side for side in tasks if left[side]]:
-                steps[side].append(found[side])
+                steps[side].append(designs[side])
                 enough = is_enough(tasks[side], steps[side])
                 left[side] = [] if enough else left[side][1:]
-    for side, searched in steps.items():
-        if not any(searched):
-            raise InputError(_nothing_found(side, tasks[side].limits, cut_short))
-    return {side: [f for step in steps[side] for f in step] for side in tasks}, cut_short
+    found = {side: [design for step in each for design in step] for side, each in steps.items()}
+    empty = [side for side, designs in found.items() if not designs]
+    if empty and not (cut_short and len(empty) < len(found)):
+        raise InputError(_nothing_found(empty[0], tasks[empty[0]].limits, cut_short))
+    return {side: designs for side, designs in found.items() if designs}, cut_short
 
 
 def _search_pieces(

@@ -12,7 +12,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from coatings.design import starts
-from coatings.design.climb import SmoothYield, climb, slack_scale
+from coatings.design.climb import STAGES, SmoothYield, climb, slack_scale
 from coatings.design.limits import RunLimits
 from coatings.design.model import FacetModel
 from coatings.design.ordered import best_ordered
@@ -100,7 +100,9 @@ def search_count(task: Task, count: int) -> list[Found]:
     if task.errors.none:
         ordered = [_by_margin(task, c) for c in leaders]
     else:
-        finished = [_by_yield(task, thin, c, generator) for c in leaders]
+        first = [_by_yield(task, thin, c, generator, stages=STAGES[:1]) for c in leaders]
+        better = _distinct(first, most=(len(first) + 1) // 2)
+        finished = [_by_yield(task, thin, c, generator, stages=STAGES[1:]) for c in better]
         listed = _distinct(finished, most=LISTED, apart_nm=_apart_nm(task))
         ordered = [
             _ordered_by_yield(task, thin, c, generator)
@@ -140,7 +142,7 @@ def _candidates(
     effort = _effort(len(film))
     nm = _starts(task, film, effort.starts, generator)
     quick = thin.with_goal(thin.goal.rough)
-    refined = least_squares(quick, nm, film=film, limits=task.limits)
+    refined = _apart(least_squares(quick, nm, film=film, limits=task.limits))
     merit = _merit(task, thin, film, generator)
     tops = _distinct(_scored(film, refined, merit(refined)), most=effort.keep)
     by_margin = _scored(film, refined, quick.margin(refined, film=film))
@@ -149,6 +151,13 @@ def _candidates(
         for c in _distinct(by_margin, most=max(effort.keep // 2, 1))
     ]
     return tops + _scored(film, np.array(flattest), merit(np.array(flattest)))
+
+
+def _apart(nm: FloatArray) -> FloatArray:
+    """Stacks (S, L) without those that ended at one place, one of each kept, in their order."""
+    _, first = np.unique(np.round(nm / ALIKE_NM), axis=0, return_index=True)
+    apart: FloatArray = nm[np.sort(first)]
+    return apart
 
 
 def _scored(film: IntArray, nm: FloatArray, scores: FloatArray) -> list[_Candidate]:
@@ -198,7 +207,12 @@ def _by_margin(task: Task, candidate: _Candidate) -> _Candidate | None:
 
 
 def _by_yield(
-    task: Task, thin: FacetModel, candidate: _Candidate, generator: np.random.Generator
+    task: Task,
+    thin: FacetModel,
+    candidate: _Candidate,
+    generator: np.random.Generator,
+    *,
+    stages: tuple[float, ...],
 ) -> _Candidate:
     """The stack near a candidate that most drawn chips meet, not yet rounded."""
     film = candidate.film
@@ -209,7 +223,7 @@ def _by_yield(
     if (smooth.slack(candidate.nm) < 0.0).all() and candidate.score < 0.0:
         nm = minimax(task.model, candidate.nm, film=film, limits=task.limits)
     else:
-        nm = climb(smooth, candidate.nm, limits=task.limits)
+        nm = climb(smooth, candidate.nm, limits=task.limits, stages=stages)
     smooth = smooth.near(nm)
     return _Candidate(film, nm, smooth.merit(nm, tau=0.05 * slack_scale(smooth, nm)))
 

@@ -279,7 +279,7 @@ def _without_spikes(window: _Window) -> _Window:
 def _reading(window: _Window, at: float) -> RippleReading:
     shape = window.shape
     if shape.fringes < FEWEST_FRINGES:
-        raise too_few_fringes(f"shows {shape.fringes:.2g} fringes")
+        raise too_few_fringes(f"shows {shape.fringes:.3g} fringes")
     degrees = window.logarithm.size - shape.parameters.size
     sigma, memory = _ln_x_sigma(window, degrees)
     x = shape.x
@@ -326,9 +326,12 @@ def _ln_x_sigma(window: _Window, degrees: int) -> tuple[float, float]:
         return np.inf, 0.0
     shape = window.shape
     rest = window.logarithm - shape.logarithm()
-    inverse = np.linalg.pinv(shape.jacobian())
+    slopes = shape.jacobian()
+    inverse = np.linalg.pinv(slopes)
+    # What each point keeps of its noise: those at steep flanks pull the curve towards themselves.
+    free = np.maximum(1.0 - np.sum(inverse.T * slopes, axis=1), 1.0 / rest.size)
     place = shape.envelope.size + shape.phase.size
-    variance = float(np.sum((inverse[place] * rest) ** 2)) * rest.size / degrees
+    variance = float(np.sum((inverse[place] * rest) ** 2 / free))
     square = float(rest @ rest)
     memory = float(rest[1:] @ rest[:-1]) / square if square > 0.0 else 0.0
     if memory > 2.0 / np.sqrt(rest.size):

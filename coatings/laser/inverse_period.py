@@ -8,6 +8,8 @@ from coatings.errors import InputError, Problem
 from coatings.laser.checks import FloatArray
 
 FEWEST_FRINGES = 3.0
+# A little below, so that a spectrum just short of three is told how many it shows.
+_SEARCHED_FROM = 2.6
 _POINTS_A_FRINGE = 4.0
 _FINER = 8
 _CANDIDATES = 3
@@ -37,7 +39,7 @@ def find_periods(
     """
     span = float(np.ptp(wave_per_cm))
     size = wave_per_cm.size
-    low, high = FEWEST_FRINGES, size / _POINTS_A_FRINGE
+    low, high = _SEARCHED_FROM, size / _POINTS_A_FRINGE
     if size < _FEWEST_POINTS:
         raise too_few_fringes(f"holds {size} points")
     if expected_per_cm is not None:

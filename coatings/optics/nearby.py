@@ -12,13 +12,14 @@ by_incident from central differences.
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, field, replace
 from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 
 from coatings.optics.arrays import Complexes, Integers, Reals
+from coatings.optics.facet import ModalFacet
 from coatings.optics.gradients import amplitude_gradient
 from coatings.optics.light import (
     FacetShares,
@@ -52,6 +53,7 @@ class NearbyLight:
     by_nm: Complexes
     by_film: Complexes
     by_incident: Complexes
+    _alone: dict[int, NearbyLight] = field(init=False, repr=False, default_factory=dict)
 
     @property
     def model(self) -> str:
@@ -88,7 +90,7 @@ class NearbyLight:
         for point in np.flatnonzero(weight.any(axis=0)):  # a search weighs few points of each chip
             rows = np.flatnonzero(weight[:, point])
             part = {name: values[rows] for name, values in shifts.items() if values is not None}
-            slope = self.at(np.array([point]))._gradient(nm[rows], film, **part)[1]
+            slope = self._at_one(int(point))._gradient(nm[rows], film, **part)[1]
             total[rows] += weight[rows, point, None] * slope[:, 0]
         return total
 
@@ -104,6 +106,11 @@ class NearbyLight:
             by_film=self.by_film[points],
             by_incident=self.by_incident[points],
         )
+
+    def _at_one(self, point: int) -> NearbyLight:
+        if point not in self._alone:
+            self._alone[point] = self.at(np.array([point]))
+        return self._alone[point]
 
     def _gap(
         self, nm: Reals, *, film_shift: Reals | None = None, incident_shift: Reals | None = None
@@ -233,12 +240,15 @@ def near(light: Light, nm: Reals, *, film: Integers) -> Light:
 
 
 def rough(light: Light) -> Light:
-    """A light for comparing many stacks: a tilted mode is simplified, all else is itself."""
+    """A light for comparing many stacks: a guided mode on fewer nodes, a tilted one by its overlap; a plane
+    wave is itself."""
     if isinstance(light, JointLight):
         return JointLight(tuple(rough(part) for part in light.parts))
-    if isinstance(light, ModeLight) and light.model == "tilted":
-        return RoughLight(light, light.plane, light.scale**2)
-    return light
+    if not isinstance(light, ModeLight):
+        return light
+    if isinstance(light.facet, ModalFacet):
+        return ModeLight(replace(light.facet, fine=0))
+    return RoughLight(light, light.plane, light.scale**2)
 
 
 def _probes(films: int) -> Reals:

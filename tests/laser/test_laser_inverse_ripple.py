@@ -24,6 +24,7 @@ from coatings.laser.inverse_shape import Shape, log_shape
 from coatings.laser.student import t_quantile
 
 STEADY = Chip(0.3, gain=0.0, slope=0.0, curve=0.0)
+GHZ_A_FRINGE = 1e7 * SPACING_NM / AT_NM**2 * 29.9792458
 
 
 @pytest.mark.parametrize("x", [0.03, 0.3, 0.8])
@@ -244,9 +245,21 @@ def test_fewer_than_three_fringes(fringes, noise):
         read_ripple(seen)
 
 
+def test_spectrum_just_short_of_three_fringes_is_told_so():
+    with pytest.raises(InputError, match=r"shows 2\.9\d? fringes: fewer than three"):
+        read_ripple(spectrum(STEADY, fringes=2.9, points=150))
+
+
+def test_no_line_where_one_is_expected():
+    # Sixteen points hold no more than four fringes; these are six.
+    seen = spectrum(STEADY, fringes=6.0, points=16)
+    with pytest.raises(InputError, match="no line in the transform: fewer than three"):
+        read_ripple(seen, mode_spacing_GHz=GHZ_A_FRINGE * 6.0 / 4.0)
+
+
 def test_expected_spacing_that_the_spectrum_can_not_show():
     seen = spectrum(STEADY, fringes=6.0, points=100)
-    spacing = 1e7 * SPACING_NM / AT_NM**2 * 29.9792458  # GHz
+    spacing = GHZ_A_FRINGE
     assert read_ripple(seen, mode_spacing_GHz=spacing).x == pytest.approx(0.3, rel=1e-6)
     with pytest.raises(InputError, match=r"spans 1\.2 mode spacings: fewer than three"):
         read_ripple(seen, mode_spacing_GHz=5.0 * spacing)
