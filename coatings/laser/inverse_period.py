@@ -55,7 +55,11 @@ def find_periods(
                 )
             )
         low, high = max(low, fringes * (1.0 - _AROUND)), min(high, fringes * (1.0 + _AROUND))
-    return tuple(span / cycles for cycles in _strongest(wave_per_cm, logarithm, low, high))
+    lines = _strongest(wave_per_cm, logarithm, low, high)
+    if not lines:
+        where = "" if expected_per_cm is None else " near the spacing of group index and length"
+        raise too_few_fringes(f"has no line{where}")
+    return tuple(span / cycles for cycles in lines)
 
 
 def too_few_fringes(found: str) -> InputError:
@@ -87,7 +91,5 @@ def _strongest(
         for k in inside[(inside > 0) & (inside < power.size - 1)]
         if power[k] >= power[k - 1] and power[k] > power[k + 1]
     ]
-    if not peaks:
-        raise too_few_fringes("no line in the transform")
     peaks.sort(key=lambda k: -power[k])
     return tuple(float(cycles[k]) for k in peaks[:_CANDIDATES])

@@ -18,7 +18,6 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 from numpy.typing import ArrayLike
-from scipy.optimize import brentq
 
 from coatings.optics.arrays import Complexes, Integers, Reals, numbers, refuse
 from coatings.optics.transforms import transform
@@ -112,6 +111,8 @@ def _full_width(mode: GuidedMode, place: int) -> float:
     def excess(at_deg: float) -> float:
         return float(_intensity(mode, np.array([at_deg]), place)[0] - 0.5 * peak)
 
+    from scipy.optimize import brentq  # slow to import, and most uses of a mode need no width
+
     low = brentq(excess, angle[first - 1], angle[first], xtol=1e-10)
     high = brentq(excess, angle[last], angle[last + 1], xtol=1e-10)
     return float(high - low)
@@ -119,6 +120,7 @@ def _full_width(mode: GuidedMode, place: int) -> float:
 
 def _peak(mode: GuidedMode, place: int, angle: Reals, intensity: Reals) -> float:
     """The top of the parabola through the three highest neighbours, on a tenth of the grid."""
+
     top = int(np.clip(np.argmax(intensity), 1, angle.size - 2))
     near = np.linspace(angle[top - 1], angle[top + 1], 41)
     fine = _intensity(mode, near, place)

@@ -251,10 +251,9 @@ def test_spectrum_just_short_of_three_fringes_is_told_so():
 
 
 def test_no_line_where_one_is_expected():
-    # Sixteen points hold no more than four fringes; these are six.
-    seen = spectrum(STEADY, fringes=6.0, points=16)
-    with pytest.raises(InputError, match="no line in the transform: fewer than three"):
-        read_ripple(seen, mode_spacing_GHz=GHZ_A_FRINGE * 6.0 / 4.0)
+    seen = spectrum(STEADY, fringes=4.8, points=100)
+    with pytest.raises(InputError, match="has no line near the spacing of group index and length"):
+        read_ripple(seen, mode_spacing_GHz=GHZ_A_FRINGE * 4.8 / 3.3)
 
 
 def test_expected_spacing_that_the_spectrum_can_not_show():
