@@ -13,7 +13,10 @@ from collections.abc import Callable, Iterable, Sequence
 from concurrent.futures import Future, ProcessPoolExecutor, as_completed
 from concurrent.futures.process import BrokenProcessPool
 from dataclasses import dataclass
+from multiprocessing.connection import wait
 from typing import Generic, TypeVar
+
+LONGEST_END_S = 5.0  # a terminated worker that takes longer to end is left to itself
 
 Piece = TypeVar("Piece")
 Result = TypeVar("Result")
@@ -117,8 +120,8 @@ class Workers:
         pool.shutdown(wait=False, cancel_futures=True)
         for process in running:
             process.terminate()
-        for process in running:
-            process.join()
+        for process in running:  # the pool's own thread reaps them: only wait for their end
+            wait([process.sentinel], timeout=LONGEST_END_S)
 
 
 def run_all(

@@ -21,7 +21,9 @@ MOST_LINES = 5
 YES, NO, UNUSABLE = 0, 1, 2
 
 # In the order of the work. Each module holds one command of its own name and imports nothing heavy.
-COMMANDS = ("start", "plan", "curve", "field", "materials")
+COMMANDS = (
+    "start", "trade", "plan", "curve", "field", "materials", "ripple", "calibrate", "reflectivity",
+)  # fmt: skip
 
 
 class Commands(click.Group):

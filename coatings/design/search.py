@@ -17,7 +17,7 @@ from coatings.design.limits import RunLimits
 from coatings.design.model import FacetModel
 from coatings.design.ordered import best_ordered
 from coatings.design.polish import least_squares, minimax
-from coatings.design.spread import RunErrors, Yield, draw_mirrored, sampled_yield
+from coatings.design.spread import Draws, RunErrors, Yield, draw_mirrored, sampled_yield
 from coatings.facets import FloatArray, IntArray
 from coatings.recipe import FacetName
 
@@ -100,12 +100,12 @@ def search_count(task: Task, count: int) -> list[Found]:
     if task.errors.none:
         ordered = [_by_margin(task, c) for c in leaders]
     else:
-        first = [_by_yield(task, thin, c, generator, stages=STAGES[:1]) for c in leaders]
-        better = _distinct(first, most=(len(first) + 1) // 2)
-        finished = [_by_yield(task, thin, c, generator, stages=STAGES[1:]) for c in better]
+        first = [_by_yield(task, thin, c, stages=STAGES[:1]) for c in leaders]
+        better = _distinct(first, most=(2 * len(first) + 2) // 3)
+        finished = [_by_yield(task, thin, c, stages=STAGES[1:]) for c in better]
         listed = _distinct(finished, most=LISTED, apart_nm=_apart_nm(task))
         ordered = [
-            _ordered_by_yield(task, thin, c, generator)
+            _ordered_by_yield(task, thin, c)
             for c in listed
             if c.score >= listed[0].score - FINE_LOSS
         ]
@@ -119,8 +119,8 @@ def search_count(task: Task, count: int) -> list[Found]:
 def _screened(
     task: Task, thin: FacetModel, orders: list[IntArray], generator: np.random.Generator
 ) -> list[IntArray]:
-    """The orders of films that are worth the full search: all of a few, else those whose best of some
-    quickly refined starts misses the windows' centres least."""
+    """The orders of films that are worth the full search: all of a few, else those that give the largest
+    margins among some quickly refined starts."""
     if len(orders) <= SCREENED:
         return orders
     coarse = task.model.with_goal(task.model.goal.thinned(SCREEN_POINTS).rough)
@@ -143,7 +143,7 @@ def _candidates(
     nm = _starts(task, film, effort.starts, generator)
     quick = thin.with_goal(thin.goal.rough)
     refined = _apart(least_squares(quick, nm, film=film, limits=task.limits))
-    merit = _merit(task, thin, film, generator)
+    merit = _merit(task, thin, film)
     tops = _distinct(_scored(film, refined, merit(refined)), most=effort.keep)
     by_margin = _scored(film, refined, quick.margin(refined, film=film))
     flattest = [
@@ -181,15 +181,18 @@ def _starts(task: Task, film: IntArray, count: int, generator: np.random.Generat
     return task.limits.inside(np.vstack(every), film=film)
 
 
-def _merit(
-    task: Task, model: FacetModel, film: IntArray, generator: np.random.Generator
-) -> Callable[[FloatArray], FloatArray]:
+def _draws(task: Task, rows: IntArray, count: int) -> Draws:
+    """``count`` drawn chips; all stacks of as many layers ``rows`` (L,) are compared under the same luck."""
+    generator = np.random.default_rng([task.seed, _side_number(task.side), len(rows), count])
+    return draw_mirrored(task.errors, film=rows, count=count, generator=generator)
+
+
+def _merit(task: Task, model: FacetModel, film: IntArray) -> Callable[[FloatArray], FloatArray]:
     """Score of stacks (S, L): smooth yield under a few draws, or the margin when nothing errs."""
     if task.errors.none:
         return lambda nm: model.margin(nm, film=film)
     rows = model.frame.film(film)
-    draws = draw_mirrored(task.errors, film=rows, count=48, generator=generator)
-    smooth = SmoothYield(model, film, draws)
+    smooth = SmoothYield(model, film, _draws(task, rows, 48))
     tau = 0.2 * float(model.goal.width.min())
     return lambda nm: np.array([smooth.near(row).merit(row, tau=tau) for row in nm])
 
@@ -210,15 +213,12 @@ def _by_yield(
     task: Task,
     thin: FacetModel,
     candidate: _Candidate,
-    generator: np.random.Generator,
     *,
     stages: tuple[float, ...],
 ) -> _Candidate:
     """The stack near a candidate that most drawn chips meet, not yet rounded."""
     film = candidate.film
-    draws = draw_mirrored(
-        task.errors, film=thin.frame.film(film), count=_effort(len(film)).draws, generator=generator
-    )
+    draws = _draws(task, thin.frame.film(film), _effort(len(film)).draws)
     smooth = SmoothYield(thin, film, draws).near(candidate.nm)
     if (smooth.slack(candidate.nm) < 0.0).all() and candidate.score < 0.0:
         nm = minimax(task.model, candidate.nm, film=film, limits=task.limits)
@@ -228,18 +228,11 @@ def _by_yield(
     return _Candidate(film, nm, smooth.merit(nm, tau=0.05 * slack_scale(smooth, nm)))
 
 
-def _ordered_by_yield(
-    task: Task, thin: FacetModel, candidate: _Candidate, generator: np.random.Generator
-) -> _Candidate | None:
+def _ordered_by_yield(task: Task, thin: FacetModel, candidate: _Candidate) -> _Candidate | None:
     """A finished stack climbed once more under many draws and put on the grid of ordered thicknesses;
     None where the grid holds none."""
     film, limits = candidate.film, task.limits
-    draws = draw_mirrored(
-        task.errors,
-        film=thin.frame.film(film),
-        count=_effort(len(film)).fine_draws,
-        generator=generator,
-    )
+    draws = _draws(task, thin.frame.film(film), _effort(len(film)).fine_draws)
     smooth = SmoothYield(thin, film, draws).near(candidate.nm)
     if not (smooth.slack(candidate.nm) >= 0.0).any():
         return _by_margin(task, candidate)

@@ -124,7 +124,7 @@ def test_paths_that_are_no_file(recipe: Path, capsys: pytest.CaptureFixture[str]
         (["curve", "R", "--nm", "1", "2"], "--nm"),
         (["curve", "R", "--take", "1"], "--take"),
         (["plam", "R"], "did you mean 'plan'?"),
-        (["witness", "R"], "expected start, plan"),
+        (["witness", "R"], "expected start, trade, plan"),
         (["--sed"], "--sed"),
         (["plan", "R", "--take", "0"], "both facets are searched; name it with --facet"),
         (["plan", "R", "--facet", "front", "--take", "99"], "front has stacks 0 to"),
