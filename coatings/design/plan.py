@@ -173,14 +173,15 @@ def ranked(stacks: list[Found], *, by_margin: bool) -> list[Found]:
 
 
 def choose(stacks: list[Found], task: Task) -> int:
-    """Index of the stack to take: the highest yield; within one standard error of it the fewest layers,
-    then the least thickness. By margin when nothing errs or nothing passes."""
+    """Index of the stack to take: the highest yield; within one standard error of it a stack that
+    meets the windows as ordered, then the fewest layers, then the least thickness. By margin when nothing errs or nothing passes."""
     best = stacks[0]
     if task.errors.none or best.yields.chips == 0.0:
         return max(range(len(stacks)), key=lambda i: stacks[i].margin)
     good_enough = best.yields.chips - best.yields.standard_error
     level = [i for i, f in enumerate(stacks) if f.yields.chips >= good_enough]
-    return min(level, key=lambda i: (len(stacks[i].nm), float(stacks[i].nm.sum())))
+    meeting = [i for i in level if stacks[i].margin >= 0.0]
+    return min(meeting or level, key=lambda i: (len(stacks[i].nm), float(stacks[i].nm.sum())))
 
 
 def _judged_as_given(task: Task, facet: Facet) -> FacetPlan:

@@ -210,9 +210,8 @@ def test_facets_that_are_given(facet, process):
 
 
 @pytest.mark.slow
-@pytest.mark.parametrize("films", [3, 4])
-def test_three_and_four_films_do_not_explode(films):
-    palette = ["L", "M", "H", "N"][:films]
+def test_four_films_do_not_explode():
+    palette = ["L", "M", "H", "N"]
     facet = {"palette": palette, "max_layers": 12, "layer_nm": [15.0, 400.0]}
     made = recipe(facet, {"at_least": 0.95}, process=ION, materials={"N": {"index": 1.9, "k": 0.0}})
     plan = plan_facets(made, sides=("front",), seed=0, workers=2)["front"]
@@ -236,5 +235,5 @@ def test_hundreds_of_layers_need_bounded_memory_and_time():
         task, task.limits.orders(200, np.random.default_rng(0))[0], 32, np.random.default_rng(0)
     )
     assert len(starts) < 150
-    found = search_count(task, 120)
+    found = search_count(task, 80)
     assert found[0].margin > 0.0
