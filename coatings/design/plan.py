@@ -173,8 +173,9 @@ def ranked(stacks: list[Found], *, by_margin: bool) -> list[Found]:
 
 
 def choose(stacks: list[Found], task: Task) -> int:
-    """Index of the stack to take: the highest yield; within one standard error of it a stack that
-    meets the windows as ordered, then the fewest layers, then the least thickness. By margin when nothing errs or nothing passes."""
+    """Index of the stack to take: the highest yield; within one standard error of it a stack that meets the
+    windows as ordered, then the fewest layers, then the least thickness. By margin when nothing errs or
+    nothing passes."""
     best = stacks[0]
     if task.errors.none or best.yields.chips == 0.0:
         return max(range(len(stacks)), key=lambda i: stacks[i].margin)
