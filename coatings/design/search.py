@@ -76,7 +76,8 @@ def _effort(count: int) -> _Effort:
         return _Effort(starts=240, keep=6, finish=16, draws=512, fine_draws=4096)
     if count <= 8:
         return _Effort(starts=80, keep=3, finish=6, draws=384, fine_draws=2048)
-    return _Effort(starts=32, keep=2, finish=4, draws=256, fine_draws=768)
+    # fewer draws than this, and the many layers of a mirror fit themselves to them
+    return _Effort(starts=32, keep=2, finish=4, draws=1024, fine_draws=2048)
 
 
 SCREENED = 12  # orders of films that get the full search where there are more
@@ -109,11 +110,10 @@ def search_count(task: Task, count: int) -> list[Found]:
             for c in listed
             if c.score >= listed[0].score - FINE_LOSS
         ]
-    on_grid = [c for c in ordered if c is not None]
-    judged = [
-        judge(task, c.film, c.nm) for c in _distinct(on_grid, most=LISTED, apart_nm=_apart_nm(task))
-    ]
-    return sorted(judged, key=lambda f: f.rank, reverse=True)
+        if leaders:  # where few chips fail the flattest stack may well be the one that most meet
+            ordered.append(_by_margin(task, max(leaders, key=lambda c: _margin(task, c))))
+    judged = [judge(task, c.film, c.nm) for c in ordered if c is not None]
+    return _different(task, sorted(judged, key=lambda f: f.rank, reverse=True))
 
 
 def _screened(
@@ -151,6 +151,10 @@ def _candidates(
         for c in _distinct(by_margin, most=max(effort.keep // 2, 1))
     ]
     return tops + _scored(film, np.array(flattest), merit(np.array(flattest)))
+
+
+def _margin(task: Task, candidate: _Candidate) -> float:
+    return float(task.model.margin(candidate.nm[None], film=candidate.film)[0])
 
 
 def _apart(nm: FloatArray) -> FloatArray:
@@ -285,9 +289,23 @@ def _distinct(
     return kept
 
 
-def _alike(one: _Candidate, other: _Candidate, apart_nm: FloatArray | float) -> bool:
+def _alike(
+    one: _Candidate | Found, other: _Candidate | Found, apart_nm: FloatArray | float
+) -> bool:
     return (
         len(one.film) == len(other.film)
         and bool(np.all(one.film == other.film))
         and bool(np.all(np.abs(one.nm - other.nm) < apart_nm))
     )
+
+
+def _different(task: Task, judged: list[Found]) -> list[Found]:
+    """The first few of judged stacks, best first, that are truly different designs."""
+    apart = _apart_nm(task)
+    kept: list[Found] = []
+    for found in judged:
+        if len(kept) < LISTED and not any(
+            _alike(found, other, apart[found.film]) for other in kept
+        ):
+            kept.append(found)
+    return kept

@@ -23,7 +23,8 @@ from coatings.recipe import FacetName, Recipe
 
 RUN_SHARE = 0.95  # share of a run's chips that must be inside for the run to count
 FAR_OUTSIDE = 0.5  # no chip passes when all miss by more than this share of the mean miss
-EXACT_CHIPS = 1024  # chips of a guided mode that are sampled exactly
+EXACT_CHIPS = 4096  # chips of a guided mode that are sampled exactly,
+EXACT_POINTS = 9  # at so many wavelengths a window
 CHUNK = 2048  # draws evaluated at once: keeps arrays in cache
 
 
@@ -209,7 +210,8 @@ def sampled_yield(
     """Yield of one ordered stack (L,) [nm] by sampling: chips of as many runs, and runs of many chips.
 
     A guided mode is sampled by its quick stand-in near the stack. What that misjudges is measured on the
-    first `EXACT_CHIPS` and taken off (a control variate), its uncertainty included.
+    first `EXACT_CHIPS`, at `EXACT_POINTS` wavelengths a window, and taken off (a control variate), its
+    uncertainty included.
     """
     rows = model.frame.film(film)
     if errors.none:
@@ -245,8 +247,11 @@ def _corrected(
     variance = share * (1.0 - share) / chips
     if quick.goal.light is not model.goal.light:
         few = draws.part(slice(0, EXACT_CHIPS))
-        exact = drawn_slack(model, nm, film=film, draws=few) >= 0.0
-        misjudged = exact.astype(float) - passed[:EXACT_CHIPS]
+        exact, approximate = (
+            drawn_slack(m.with_goal(m.goal.thinned(EXACT_POINTS)), nm, film=film, draws=few) >= 0.0
+            for m in (model, quick)
+        )
+        misjudged = exact.astype(float) - approximate
         share = min(max(share + float(misjudged.mean()), 0.0), 1.0)
         variance += float(misjudged.var()) / len(misjudged)
     return share, max(sqrt(variance), 1.0 / chips)
