@@ -79,6 +79,14 @@ def light_on(recipe: Recipe, facet: Facet, *, wavelength_nm: FloatArray, view: V
         return _light(recipe, facet, wavelength_nm, view)
     except MaterialError as error:
         raise InputError(Problem(f"{recipe.path}: {facet.name}", str(error))) from None
+    except InputError as error:
+        raise InputError([_placed(recipe, problem) for problem in error.problems]) from None
+
+
+def _placed(recipe: Recipe, problem: Problem) -> Problem:
+    """The problem with file and section where the optics named only a key of [chip]."""
+    is_bare_key = problem.where in ("tilt_deg", "lateral_um")
+    return Problem(f"{recipe.path}: chip.{problem.where}", problem.what) if is_bare_key else problem
 
 
 def _light(recipe: Recipe, facet: Facet, wavelength_nm: FloatArray, view: View) -> Light:

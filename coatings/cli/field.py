@@ -47,10 +47,15 @@ def field_rows(recipe: Recipe, fields: Mapping[FacetName, FacetField]) -> Iterat
     """Summary: per facet a line a layer with its peak, and what the coating absorbs."""
     from coatings.cli.words import side_label, title
 
-    yield "", title(recipe)
+    yield "FIELD", title(recipe)
     for side, found in fields.items():
         yield from _facet_rows(side_label(side), found)
     yield "", "E2: electric field squared over that of the wave running onto the facet in the chip"
+    if recipe.chip.guide is not None or recipe.chip.tilt_deg > 0.0:
+        yield (
+            "",
+            "field and absorption are those of a plane wave at the modal index, along the normal",
+        )
 
 
 def _facet_rows(label: str, found: FacetField) -> Iterator[Row]:

@@ -38,6 +38,7 @@ def plan_rows(planned: Planned) -> Iterator[Row]:
     yield "PLAN", title(recipe)
     for side, plan in planned.plans.items():
         yield from _facet_rows(planned, side, plan)
+    yield from _other_rows(planned)
     yield from laser_rows(planned.laser, recipe, planned.limits)
     yield from _run_rows(planned)
     yield from note_rows(recipe, planned.stacks)
@@ -142,6 +143,17 @@ def shortfall_text(short: Shortfall, plan: FacetPlan) -> str:
         f"{percent(short.miss)} {direction} the {percent(short.bound)} of window "
         f"{short.window + 1}; what would help: {help_with}"
     )
+
+
+def _other_rows(planned: Planned) -> Iterator[Row]:
+    """Facets without windows: they are taken as they are, and the laser sees them."""
+    recipe = planned.recipe
+    at = np.array([recipe.chip.wavelength_nm])
+    for side, facet in recipe.facets.items():
+        if side not in planned.plans and not facet.windows:
+            R = float(facet_spectrum(recipe, side, wavelength_nm=at).R[0])
+            yield side_label(side), f"no windows, taken as given: R {percent(R)} at {at[0]:g} nm"
+            yield "", escape(_own_layers(facet))
 
 
 def _facet_rows(planned: Planned, side: FacetName, plan: FacetPlan) -> Iterator[Row]:

@@ -28,8 +28,9 @@ def witness_rows(recipe: Recipe, curve: WitnessCurve) -> Iterator[Row]:
     values = curve.R if piece.quantity == "R" else curve.T
     low, high = int(np.argmin(values)), int(np.argmax(values))
     nm = curve.wavelength_nm
+    back = "back face included" if piece.back == "polished" else "nothing from the ground back"
     yield (
         "",
         f"{piece.quantity} from {percent(float(values[low]))} (at {nm[low]:g} nm) to "
-        f"{percent(float(values[high]))} (at {nm[high]:g} nm), back face included",
+        f"{percent(float(values[high]))} (at {nm[high]:g} nm), {back}",
     )

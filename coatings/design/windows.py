@@ -20,6 +20,7 @@ from coatings.optics.nearby import near, rough
 from coatings.recipe import FacetName, Recipe, Window
 
 GRID_STEP_NM = 1.0
+ROUNDING = 1e-9  # an absorptance below this is rounding, or the error of an integral
 LEAST_WIDTH = 1e-6  # reflectance; finer than any facet is made or measured
 
 
@@ -63,7 +64,8 @@ class Constraints:
         """Slack (S, Q) from R and, when a bound on absorption is among them, A (S, P)."""
         quantity = R[:, self.point]
         if A is not None and self.absorption.any():
-            quantity = np.where(self.absorption, A[:, self.point], quantity)
+            absorbed = np.where(np.abs(A) < ROUNDING, 0.0, A)
+            quantity = np.where(self.absorption, absorbed[:, self.point], quantity)
         return self.sign * (self.bound - quantity)
 
     @property
@@ -133,8 +135,7 @@ class Goal:
         if not self.constraints.on_absorption:
             R = self.light.reflectance(nm, film=film, **shifts)
             return self.constraints.slack(R, None)
-        found = self.light.shares(nm, film=film, **shifts)
-        return self.constraints.slack(found.R, found.A)
+        return self.constraints.slack(*self.light.absorbed(nm, film=film, **shifts))
 
     def thinned(self, most: int) -> Goal:
         """At most ``most`` points a window, evenly spread, ends kept."""

@@ -56,6 +56,12 @@ def material_sources(recipe: Recipe, stacks: Mapping[FacetName, Stack | None]) -
 def _unknown_k(recipe: Recipe, stacks: Mapping[FacetName, Stack | None]) -> Iterator[str]:
     infos = [recipe.material(name).info for name in _films(recipe, stacks)]
     names = [f"{info.name} ({info.k_status})" for info in infos if not info.k_known]
+    at = np.array([recipe.chip.wavelength_nm])
+    names += [
+        f"{info.name} (0 in its table here)"
+        for info in infos
+        if info.k_known and info.use != "own" and recipe.material(info.name).nk(at)[0].imag == 0.0
+    ]
     if names:
         yield f"absorption counted as zero for want of a measured k: {', '.join(names)}"
 

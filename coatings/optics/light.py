@@ -56,6 +56,9 @@ class Light(Protocol):
     def reflectance(self, nm: Reals, *, film: Integers, **shifts: Any) -> Reals:
         """R (S, P) of stacks ``nm`` (S, L) [nm]."""
 
+    def absorbed(self, nm: Reals, *, film: Integers, **shifts: Any) -> tuple[Reals, Reals]:
+        """R and A (S, P) of stacks ``nm`` (S, L) [nm]."""
+
     def gradient(self, nm: Reals, *, film: Integers, of: Share = "R") -> tuple[Reals, Reals]:
         """R or A (S, P) and its derivative (S, P, L) by thickness [1/nm]."""
 
@@ -88,6 +91,11 @@ class PlaneLight:
     def reflectance(self, nm: Reals, *, film: Integers, **shifts: Any) -> Reals:
         """R (S, P) of stacks ``nm`` (S, L) [nm]."""
         return reflectance(self.scene, nm, film=film, **shifts)
+
+    def absorbed(self, nm: Reals, *, film: Integers, **shifts: Any) -> tuple[Reals, Reals]:
+        """R and A (S, P) of stacks ``nm`` (S, L) [nm]."""
+        found = self.shares(nm, film=film, **shifts)
+        return found.R, found.A
 
     def gradient(self, nm: Reals, *, film: Integers, of: Share = "R") -> tuple[Reals, Reals]:
         """R or A (S, P) and its derivative (S, P, L) by thickness [1/nm]."""
@@ -143,6 +151,11 @@ class ModeLight:
     def reflectance(self, nm: Reals, *, film: Integers, **shifts: Any) -> Reals:
         """R (S, P) of stacks ``nm`` (S, L) [nm]."""
         return self.facet.reflectance(nm, film=film, **shifts)
+
+    def absorbed(self, nm: Reals, *, film: Integers, **shifts: Any) -> tuple[Reals, Reals]:
+        """R and A (S, P) of stacks ``nm`` (S, L) [nm]."""
+        found = self.shares(nm, film=film, **shifts)
+        return found.R, found.A
 
     def gradient(self, nm: Reals, *, film: Integers, of: Share = "R") -> tuple[Reals, Reals]:
         """R or A (S, P) and its derivative (S, P, L) by thickness [1/nm]."""
@@ -221,6 +234,12 @@ class JointLight:
     def reflectance(self, nm: Reals, *, film: Integers, **shifts: Any) -> Reals:
         """R (S, P) of stacks ``nm`` (S, L) [nm]."""
         return np.hstack([part.reflectance(nm, film=film, **shifts) for part in self.parts])
+
+    def absorbed(self, nm: Reals, *, film: Integers, **shifts: Any) -> tuple[Reals, Reals]:
+        """R and A (S, P) of stacks ``nm`` (S, L) [nm]."""
+        found = [part.absorbed(nm, film=film, **shifts) for part in self.parts]
+        R, A = zip(*found, strict=True)
+        return np.hstack(R), np.hstack(A)
 
     def gradient(self, nm: Reals, *, film: Integers, of: Share = "R") -> tuple[Reals, Reals]:
         """R or A (S, P) and its derivative (S, P, L) by thickness [1/nm]."""

@@ -13,6 +13,7 @@ by_incident from central differences.
 from __future__ import annotations
 
 from dataclasses import dataclass, field, replace
+from functools import cached_property
 from typing import Any
 
 import numpy as np
@@ -74,10 +75,23 @@ class NearbyLight:
         r = self.scale * reflection(self.scene, nm, film=film, **shifts) + self._gap(nm, **shifts)
         return squared(r)
 
+    def absorbed(self, nm: Reals, *, film: Integers, **shifts: Any) -> tuple[Reals, Reals]:
+        """R and A (S, P); A is the plane wave's with what the mode absorbs more at the stack here."""
+        flat = PlaneLight(self.scene).shares(nm, film=film, **shifts).A
+        return self.reflectance(nm, film=film, **shifts), flat + self._more_absorbed
+
+    @cached_property
+    def _more_absorbed(self) -> Reals:
+        here = self.nm[None]
+        exact = self.exact.shares(here, film=self.film).A
+        more: Reals = (exact - PlaneLight(self.scene).shares(here, film=self.film).A)[0]
+        return more
+
     def gradient(self, nm: Reals, *, film: Integers, of: Share = "R") -> tuple[Reals, Reals]:
-        """R (S, P) and its derivative (S, P, L) [1/nm]; A by the exact light."""
+        """R or A (S, P) and its derivative (S, P, L) [1/nm]; for A the plane wave's."""
         if of != "R":
-            return self.exact.gradient(nm, film=film, of=of)
+            A, slope = PlaneLight(self.scene).gradient(nm, film=film, of=of)
+            return A + self._more_absorbed, slope
         return self._gradient(nm, film)
 
     def weighted_gradient(
@@ -85,7 +99,9 @@ class NearbyLight:
     ) -> Reals:
         """Sum over points of weight (S, P) times the derivative by thickness, (S, L) [1/nm]."""
         if of != "R":
-            return self.exact.weighted_gradient(nm, film=film, weight=weight, of=of, **shifts)
+            return PlaneLight(self.scene).weighted_gradient(
+                nm, film=film, weight=weight, of=of, **shifts
+            )
         total = np.zeros_like(nm)
         for point in np.flatnonzero(weight.any(axis=0)):  # a search weighs few points of each chip
             rows = np.flatnonzero(weight[:, point])
@@ -162,6 +178,11 @@ class RoughLight:
     def reflectance(self, nm: Reals, *, film: Integers, **shifts: Any) -> Reals:
         """R (S, P) of stacks ``nm`` (S, L) [nm]."""
         return self.square * PlaneLight(self.scene).reflectance(nm, film=film, **shifts)
+
+    def absorbed(self, nm: Reals, *, film: Integers, **shifts: Any) -> tuple[Reals, Reals]:
+        """R and A (S, P); A is the plane wave's."""
+        A = PlaneLight(self.scene).shares(nm, film=film, **shifts).A
+        return self.reflectance(nm, film=film, **shifts), A
 
     def gradient(self, nm: Reals, *, film: Integers, of: Share = "R") -> tuple[Reals, Reals]:
         """R (S, P) and its derivative (S, P, L) [1/nm]; A by the exact light."""
