@@ -9,9 +9,10 @@ from __future__ import annotations
 import multiprocessing
 import os
 import signal
-from collections.abc import Callable, Iterable, Sequence
+from collections.abc import Callable, Iterable, Iterator, Sequence
 from concurrent.futures import Future, ProcessPoolExecutor, as_completed
 from concurrent.futures.process import BrokenProcessPool
+from contextlib import contextmanager
 from dataclasses import dataclass
 from multiprocessing.connection import wait
 from typing import Generic, TypeVar
@@ -91,9 +92,10 @@ class Workers:
         left = dict.fromkeys(range(len(pieces)))
         try:
             pool = self._started()
-            numbers: dict[Future[Result], int] = {
-                pool.submit(function, piece): number for number, piece in enumerate(pieces)
-            }
+            with _interrupts_held():
+                numbers: dict[Future[Result], int] = {
+                    pool.submit(function, piece): number for number, piece in enumerate(pieces)
+                }
             for future in as_completed(numbers):
                 number = numbers[future]
                 result = future.result()
@@ -144,6 +146,20 @@ def _run_here(
 ) -> None:
     for number in numbers:
         done(number, function(pieces[number]))
+
+
+@contextmanager
+def _interrupts_held() -> Iterator[None]:
+    """Hold Ctrl-C back while workers are started: they inherit that, and so can't be hit before they are
+    ready to leave it to the parent. The parent gets it afterwards."""
+    if not hasattr(signal, "pthread_sigmask"):
+        yield
+        return
+    before = signal.pthread_sigmask(signal.SIG_BLOCK, {signal.SIGINT})
+    try:
+        yield
+    finally:
+        signal.pthread_sigmask(signal.SIG_SETMASK, before)
 
 
 def _prepare_worker() -> None:
