@@ -69,9 +69,9 @@ class Chip(Section):
     polarization: Literal["TE", "TM"] = entry(
         "Polarization of the chip's light; TE has its electric field along the epitaxial layers"
     )
-    length_um: float = number("Length of the chip", "um", ge=1.0, le=1e6)
+    length_um: float = number("Length of the chip", "um", gt=0.0, le=1e6)
     stripe_um: float = number(
-        "Pumped width, and width of the emitter at the facet", "um", ge=0.01, le=1e5
+        "Pumped width, and width of the emitter at the facet", "um", gt=0.0, le=1e5
     )
     emitters: int = number(
         "Emitters on a bar; currents and powers are per bar", "1", default=1, ge=1, le=100000
