@@ -58,12 +58,14 @@ def materials(
     from coatings.cli.options import DEFAULT_SEED, Shared
     from coatings.cli.shelf import list_result, load_shown, shown_result
     from coatings.errors import InputError, Problem
+    from materials.index import DECLINED
 
     shared = Shared(out=out, json=json_file, seed=DEFAULT_SEED, workers=1, quiet=quiet)
     found = library.search(name) if name and not _is_entry(name) else None
     if name is not None and not found and not _is_entry(name):
         near = library.nearest(name)
         hint = f"did you mean {near}?" if near else "'facetwright materials' lists all"
+        hint = DECLINED.get(name, hint)
         raise InputError(Problem(name, f"is not a material; {hint}"))
     if name is None or found:
         if nm is not None or out is not None:

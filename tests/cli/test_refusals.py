@@ -194,3 +194,9 @@ def test_numbers_of_the_laser_that_contradict_each_other(
     (line,) = refusal(capsys, "plan", recipe)
     assert "junction_V" in line
     assert not Path("out").exists()
+
+
+def test_a_material_that_the_library_declines_says_why(capsys: pytest.CaptureFixture[str]) -> None:
+    assert run(["materials", "InGaAs-on-GaAs"]) == 2
+    line = capsys.readouterr().err
+    assert line.startswith("facetwright: InGaAs-on-GaAs: is not a material; no measured index of")
