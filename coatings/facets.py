@@ -21,6 +21,8 @@ from materials.errors import MaterialError
 
 SIDES: tuple[FacetName, ...] = ("front", "rear")
 
+MOST_OUTSIDE_K = 1e-3  # water in the near infrared stays below it, a metal does not
+
 FloatArray = NDArray[np.float64]
 IntArray = NDArray[np.intp]
 
@@ -167,7 +169,7 @@ def chip_mode(
 def _sister_shift(recipe: Recipe, index: float, *, tm: bool) -> float:
     guide = chip_guide(recipe, np.array([recipe.chip.wavelength_nm]))
     shift = 0.0
-    for _ in range(3):  # the effective index follows a common shift almost one to one
+    for _ in range(8):  # the effective index follows a common shift almost one to one
         found = float(fundamental(guide.shifted(shift), tm=tm).n_eff[0].real)
         shift += index - found
     return shift
@@ -178,7 +180,15 @@ def _films(
 ) -> tuple[NDArray[np.complex128], NDArray[np.complex128]]:
     films = [recipe.material(name).nk(wavelength_nm) for name in facet.films]
     table = np.array(films, dtype=complex).reshape(len(films), len(wavelength_nm))
-    return table, recipe.index_of(facet.outside, wavelength_nm)
+    outside = recipe.index_of(facet.outside, wavelength_nm)
+    worst = int(np.argmax(outside.imag))
+    if outside[worst].imag > MOST_OUTSIDE_K:
+        what = (
+            f"{facet.outside} absorbs, k = {outside[worst].imag:.3g} at {wavelength_nm[worst]:g} nm: no "
+            "light leaves into it; give what lies beyond the coating, and metals as layers"
+        )
+        raise InputError(Problem(f"{recipe.path}: {facet.name}.outside", what))
+    return table, outside
 
 
 def stack_of(facet: Facet, searched: Stack | None = None) -> Stack:
