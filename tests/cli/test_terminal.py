@@ -31,7 +31,7 @@ def test_plan_fits_one_screen(recipe: Path, capsys: pytest.CaptureFixture[str]) 
     assert len(lines) <= ONE_SCREEN
     assert all(len(line) <= 80 and line == line.rstrip() for line in lines)
     assert [line.split()[0] for line in lines if not line.startswith(" ")] == [
-        "PLAN", "FRONT", "REAR", "LASER", "RUN", "FILES",
+        "PLAN", "FRONT", "REAR", "LASER", "RUN", "NOTE", "FILES",
     ]  # fmt: skip
 
 
