@@ -68,7 +68,14 @@ def program() -> None:
 
 def main() -> None:
     """Entry point of the command line."""
-    sys.exit(run(sys.argv[1:]))
+    try:
+        status = run(sys.argv[1:])
+    except (
+        KeyboardInterrupt
+    ):  # between the program's start and the watch over interrupts, or after it
+        complain("facetwright: stopped; nothing was written")
+        status = NO
+    sys.exit(status)
 
 
 def run(arguments: list[str]) -> int:
